@@ -1,0 +1,120 @@
+"""The energy of a bond: the fragments minus the molecule."""
+
+from typing import Annotated, ClassVar, Literal
+
+from pydantic import Field
+
+from plumbrule_core.documents.bonding import bonds, distance, pieces
+from plumbrule_core.documents.faults import Fault
+from plumbrule_core.documents.ground_states import ground_multiplicity
+from plumbrule_core.documents.questions.base import Clause, Many, Part, QuestionBase, unbalanced
+from plumbrule_core.documents.species import Atom, Species
+
+AtomNumber = Annotated[int, Field(ge=1)]
+
+
+class BondQuestion(QuestionBase):
+    """`cut` names the two bonded atoms (from 1), or `fragments` names the two species that are left."""
+
+    label: ClassVar[str] = "bond energy"
+    energy_class: ClassVar[str] = "atomisation"
+
+    kind: Literal["bond"] = "bond"
+    species: str
+    cut: tuple[AtomNumber, AtomNumber] | None = None
+    fragments: tuple[str, str] | None = None
+    fragment_multiplicities: tuple[AtomNumber, AtomNumber] | None = None
+
+    def named(self) -> tuple[tuple[str, str], ...]:
+        """The molecule, and the fragments where they are given."""
+        fragments = tuple((f"fragments.{i}", name) for i, name in enumerate(self.fragments or (), start=1))
+        return (("species", self.species), *fragments)
+
+    def own_faults(self, species: Many) -> tuple[Fault, ...]:
+        """A cut that is none, fragments that do not add up."""
+        if (self.cut is None) == (self.fragments is None):
+            return (Fault(where="question", says="a bond needs either cut = [1, 2] or fragments = ['a', 'b']"),)
+        if self.fragments:
+            return self._fragment_faults(species)
+        return self._cut_faults(species[self.species])
+
+    def _fragment_faults(self, species: Many) -> tuple[Fault, ...]:
+        whole, parts = species[self.species], tuple(species[name] for name in self.fragments or ())
+        off = unbalanced((whole,), parts, "question.fragments")
+        if sum(part.charge for part in parts) != whole.charge:
+            off += (Fault(where="question.fragments", says=f"the charges do not add up to that of {whole.name}"),)
+        return off
+
+    def _cut_faults(self, whole: Species) -> tuple[Fault, ...]:
+        where = "question.cut"
+        first, second = self.cut or (1, 1)
+        if max(first, second) > len(whole.atoms) or first == second:
+            says = f"{whole.name} has atoms 1 to {len(whole.atoms)}; name two different ones"
+            return (Fault(where=where, says=says),)
+        if whole.charge:
+            says = f"{whole.name} is charged, so the fragments' charges are not clear; name them with fragments"
+            return (Fault(where=where, says=says),)
+        i, j = sorted((first - 1, second - 1))
+        links = bonds(whole.atoms)
+        if (i, j) not in links and len(pieces(len(whole.atoms), links)) == 1:
+            apart = distance(whole.atoms[i], whole.atoms[j])
+            says = f"atoms {first} and {second} of {whole.name} are not bonded: they are {apart:.2f} angstrom apart"
+            return (Fault(where=where, says=says),)
+        if len(self._sides(whole)) != 2:
+            says = f"cutting {first}-{second} does not leave two pieces: the bond is part of a ring, or a piece is loose"
+            return (Fault(where=where, says=says),)
+        return tuple(fault for part in self._cut_species(whole) for fault in self._spin_faults(part))
+
+    @staticmethod
+    def _spin_faults(part: Species) -> tuple[Fault, ...]:
+        return tuple(Fault(where="question.fragment_multiplicities", says=f.says) for f in part.faults())
+
+    def _sides(self, whole: Species) -> tuple[tuple[int, ...], ...]:
+        first, second = self.cut or (1, 1)
+        i, j = sorted((first - 1, second - 1))
+        left = tuple(link for link in bonds(whole.atoms) if link != (i, j))
+        sides = pieces(len(whole.atoms), left)
+        return tuple(sorted(sides, key=lambda side: first - 1 not in side))
+
+    def _cut_species(self, whole: Species) -> tuple[Species, ...]:
+        return tuple(
+            _fragment(whole, side, (self.fragment_multiplicities or (None, None))[place])
+            for place, side in enumerate(self._sides(whole))
+        )
+
+    def parts(self, species: Many) -> tuple[Part, ...]:
+        """Both fragments minus the molecule."""
+        whole = species[self.species]
+        if self.fragments:
+            pair = tuple(species[name] for name in self.fragments)
+        else:
+            pair = self._cut_species(whole)
+        return (*(Part(coefficient=1.0, species=part) for part in pair), Part(coefficient=-1.0, species=whole))
+
+    def subject(self, species: Many) -> tuple[Clause, ...]:
+        """`of N-N in hydrazine`."""
+        return (
+            Clause(text=" of "),
+            Clause(text=self._bond_words(species), key="cut"),
+            Clause(text=" in "),
+            Clause(text=self.species, key="species"),
+        )
+
+    def _bond_words(self, species: Many) -> str:
+        whole = species.get(self.species)
+        if self.cut and whole and max(self.cut) <= len(whole.atoms):
+            first, second = self.cut
+            return f"{whole.atoms[first - 1].symbol}{first}-{whole.atoms[second - 1].symbol}{second}"
+        return " and ".join(self.fragments or ("a bond",))
+
+
+def _fragment(whole: Species, side: tuple[int, ...], multiplicity: int | None) -> Species:
+    atoms: tuple[Atom, ...] = tuple(whole.atoms[place] for place in side)
+    numbers = ",".join(str(place + 1) for place in side)
+    return Species(
+        name=f"{whole.name} atoms {numbers}"[:80],
+        atoms=atoms,
+        charge=0,
+        multiplicity=multiplicity or ground_multiplicity(atoms, 0),
+        origin=f"cut from {whole.name}, not relaxed",
+    )

@@ -1,0 +1,136 @@
+"""What a rung is: one method on the ladder, with its price, its citation and the numbers that prove it."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import Any, Literal, Protocol
+
+import numpy as np
+
+from plumbrule_core.documents.plan import Forecast, Machine, TaskSpec
+
+Kind = Literal["wave function", "density functional"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Size:
+    """What the price depends on: counts of atoms, basis functions and correlated orbitals (spatial)."""
+
+    atoms: int
+    functions: int
+    occupied: int
+    """Correlated occupied orbitals of the majority spin."""
+    virtual: int
+    frozen: int = 0
+    unrestricted: bool = False
+    density_fitting: bool = False
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Published:
+    """A value from outside the project that this rung must reproduce; energies in hartree.
+
+    `check` names an entry of the check-value collection, or is empty where `source` alone says it.
+    """
+
+    xyz: str
+    """Atom lines in angstrom."""
+    basis: str
+    energy: float
+    atol: float
+    source: str
+    check: str = ""
+    charge: int = 0
+    multiplicity: int = 1
+    core: Literal["frozen", "all"] = "all"
+    cartesian: bool = False
+    slow: bool = False
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Outcome:
+    """What a rung computed: total energy in hartree, and what else is to be kept."""
+
+    energy: float
+    reference: str
+    """RHF, UHF, ROHF, RKS or UKS."""
+    correlation: float | None = None
+    converged: bool = True
+    iterations: int = 0
+    notes: tuple[str, ...] = ()
+    used: Mapping[str, str] = field(default_factory=dict)
+    arrays: Mapping[str, np.ndarray] = field(default_factory=dict)
+
+
+@dataclass(slots=True)
+class Bench:
+    """Live library objects that the tasks of one chain share inside one worker; never sent anywhere."""
+
+    molecule: Any = None
+    mean_field: Any = None
+    frozen: int = 0
+    """Number of frozen core orbitals."""
+    perturbation: Any = None
+    """The MP2 object, with its amplitudes."""
+    integrals: Any = None
+    """Transformed integrals, shared by CISD, CCSD and (T)."""
+    coupled_cluster: Any = None
+    outcomes: dict[str, Outcome] = field(default_factory=dict)
+
+
+class Shelf(Protocol):
+    """Where one task keeps its checkpoints: arrays and a few plain values, replaced as a whole."""
+
+    def load(self) -> Mapping[str, np.ndarray] | None:
+        """The last checkpoint, or None where there is none that can be read."""
+
+    def save(self, arrays: Mapping[str, np.ndarray]) -> None:
+        """Write beside and rename; never leaves half a checkpoint."""
+
+
+class Tell(Protocol):
+    """How a rung speaks while it computes. Every call raises Stopped where the user asked to stop."""
+
+    def iteration(self, n: int, energy: float, residual: float | None = None, stage: str = "") -> None:
+        """One iteration: total energy in hartree, residual norm."""
+
+    def progress(self, fraction: float, what: str = "") -> None:
+        """How far a task without iterations has come, 0 to 1."""
+
+    def note(self, text: str) -> None:
+        """A line for people, in the task's log."""
+
+    def checkpoint(self, what: str) -> None:
+        """Say that the checkpoint just saved is safe."""
+
+
+@dataclass(slots=True, kw_only=True)
+class Given:
+    """What a rung is given to compute with."""
+
+    spec: TaskSpec
+    bench: Bench
+    shelf: Shelf
+    threads: int
+    memory_mb: float
+
+
+class Rung(Protocol):
+    """One method. PySCF is imported inside `compute` only, so that the window's process never loads it."""
+
+    name: str
+    says: str
+    """What the card on the Build page says of it, in one short sentence."""
+    kind: Kind
+    needs: tuple[str, ...]
+    """Rungs that must have been computed in the same chain before."""
+    rank: int
+    """Order of trust within its kind: the answer stands on the highest rank that is not stopped."""
+    single_reference: bool
+    citation: str
+    published: tuple[Published, ...]
+
+    def forecast(self, size: Size, machine: Machine) -> Forecast:
+        """Time, memory and disk of this rung alone, once its needs are there."""
+
+    def compute(self, given: Given, tell: Tell) -> Outcome:
+        """Compute, carrying on from the shelf where it can; raises PlumbruleError with a sentence, or Stopped."""

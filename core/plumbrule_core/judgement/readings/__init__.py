@@ -1,1 +1,29 @@
-"""..."""
+"""Readings: what is measured after each rung. A reading never judges; the rules do.
+
+| reading | after | unit | what it is |
+|---|---|---|---|
+| `s2` | HF | | <S^2> of the reference |
+| `s2_ideal` | HF | | S(S+1) of the multiplicity |
+| `s2_excess` | HF | | `s2` - `s2_ideal` |
+| `stable` | HF | | the solution is a minimum in its own kind (after following), true or false |
+| `stable_external` | HF | | restricted solutions of closed shells alone: no unrestricted solution starts here |
+| `instability_depth` | HF | hartree | how far the unrestricted solution lies below the restricted one; 0 where none does |
+| `uhf_natural_occupations` | HF | electrons | all natural occupations of the unrestricted solution, largest first |
+| `uhf_fractional` | HF | electrons | the largest min(n, 2 - n) among them, singly occupied orbitals left out: 0 paired, 1 diradical |
+| `homo_lumo_gap` | HF | eV | lowest virtual minus highest occupied orbital energy, the smaller of the two spins |
+| `overlap_condition` | HF | | smallest eigenvalue of the overlap matrix of the basis |
+| `removed_functions` | HF | functions | combinations of basis functions removed as linearly dependent |
+| `natural_occupations` | MP2 | electrons | unrelaxed MP2 natural occupations of the correlated orbitals, largest first |
+| `M` | MP2 | | (2 - n_DONO + sum |n_SOMO - 1| + n_UNO) / 2 from the MP2 occupations |
+| `mp2_largest_t2` | MP2 | | largest absolute first-order doubles amplitude |
+| `c0_squared` | CISD | | weight of the reference determinant |
+| `T1` | CCSD | | norm of the singles amplitudes per correlated electron |
+| `D1` | CCSD | | largest singular value of the singles amplitudes |
+| `D2` | CCSD | | closed shells alone: the same for the doubles |
+| `largest_t1`, `largest_t2` | CCSD | | largest absolute amplitudes |
+| `share_of_triples` | CCSD(T) | | (T) divided by the whole correlation energy |
+| `triples` | CCSD(T) | hartree | the (T) correction |
+
+A reading that is not defined for a case (no pairs to correlate, an open shell) is absent, never zero.
+`c0_squared` of an active-space solve and the share of the atomisation energy are taken elsewhere.
+"""

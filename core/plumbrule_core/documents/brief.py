@@ -29,7 +29,7 @@ class Brief(Document):
         return {one.name: one for one in self.species}
 
     def faults(self) -> tuple[Fault, ...]:
-        """What is wrong with question and species; the recipe is judged by the planner, which knows the rungs."""
+        """What is wrong with question and species; the planner, which knows the rungs, judges the recipe."""
         names = [one.name for one in self.species]
         twice = tuple(
             Fault(where=f"species.{name}", says="two species have this name; names must differ")

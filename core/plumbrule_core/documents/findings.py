@@ -114,4 +114,3 @@ class Judgement(Document):
     findings: tuple[Finding, ...] = ()
     species: tuple[SpeciesJudgement, ...] = ()
     citations: tuple[str, ...] = ()
-

@@ -7,11 +7,11 @@ from plumbrule_core.documents.species import Atom, hill, lowest_multiplicity
 from plumbrule_core.elements import ELEMENTS
 
 SMALL_HIGH_SPIN = {"CH2": 3, "HN": 3, "O2": 3, "OS": 3, "S2": 3, "B2": 3, "HP": 3, "BN": 3}
-"""Small neutral molecules whose ground state is a triplet (diatomic and radical spectroscopy, from memory)."""
+"""Small neutral molecules whose ground state is a triplet (spectroscopy, from memory)."""
 
 
 def ground_multiplicity(atoms: Sequence[Atom], charge: int) -> int:
-    """The multiplicity to propose: of the atom, of a small molecule known to be high-spin, else the lowest."""
+    """The multiplicity to propose: that of the atom or of a known small triplet, else the lowest."""
     symbols = [atom.symbol for atom in atoms]
     if charge == 0 and len(atoms) == 1:
         return ELEMENTS[symbols[0]].ground_multiplicity

@@ -68,14 +68,24 @@ class Species(Document):
         """Charge and multiplicity that cannot be."""
         where = f"species.{self.name}.multiplicity"
         if self.electrons < 0:
-            return (Fault(where=f"species.{self.name}.charge", says=f"{self.formula} would have fewer than no electrons"),)
+            return (
+                Fault(
+                    where=f"species.{self.name}.charge",
+                    says=f"{self.formula} would have fewer than no electrons",
+                ),
+            )
         if self.unpaired > self.electrons:
-            return (Fault(where=where, says=f"{self.unpaired} unpaired electrons, but there are only {self.electrons}"),)
+            return (
+                Fault(
+                    where=where,
+                    says=f"{self.unpaired} unpaired electrons, but there are only {self.electrons}",
+                ),
+            )
         if (self.electrons - self.unpaired) % 2:
             kind, fits = ("even", "odd (1, 3, 5)") if self.electrons % 2 == 0 else ("odd", "even (2, 4, 6)")
             says = (
-                f"{self.multiplicity} does not fit: {self.formula} has {self.electrons} electrons, an {kind} number, "
-                f"so the multiplicity must be {fits}"
+                f"{self.multiplicity} does not fit: {self.formula} has {self.electrons} electrons, "
+                f"an {kind} number, so the multiplicity must be {fits}"
             )
             return (Fault(where=where, says=says),)
         return ()
@@ -102,7 +112,9 @@ def spin_words(multiplicity: int) -> str:
     """`triplet, 2 unpaired electrons`."""
     word = SPIN_WORDS.get(multiplicity, f"multiplicity {multiplicity}")
     unpaired = multiplicity - 1
-    many = {0: "no unpaired electron", 1: "1 unpaired electron"}.get(unpaired, f"{unpaired} unpaired electrons")
+    many = {0: "no unpaired electron", 1: "1 unpaired electron"}.get(
+        unpaired, f"{unpaired} unpaired electrons"
+    )
     return f"{word}, {many}"
 
 

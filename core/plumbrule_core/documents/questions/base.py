@@ -56,7 +56,10 @@ class QuestionBase(Document):
     def faults(self, species: Many) -> tuple[Fault, ...]:
         """All that is wrong, in words, with the key; empty when it can be asked."""
         missing = tuple(
-            Fault(where=f"question.{key}", says=f"there is no species named '{name}'; there is {_names(species)}")
+            Fault(
+                where=f"question.{key}",
+                says=f"there is no species named '{name}'; there is {_names(species)}",
+            )
             for key, name in self.named()
             if name not in species
         )

@@ -33,7 +33,9 @@ class BondQuestion(QuestionBase):
     def own_faults(self, species: Many) -> tuple[Fault, ...]:
         """A cut that is none, fragments that do not add up."""
         if (self.cut is None) == (self.fragments is None):
-            return (Fault(where="question", says="a bond needs either cut = [1, 2] or fragments = ['a', 'b']"),)
+            return (
+                Fault(where="question", says="a bond needs either cut = [1, 2] or fragments = ['a', 'b']"),
+            )
         if self.fragments:
             return self._fragment_faults(species)
         return self._cut_faults(species[self.species])
@@ -42,7 +44,9 @@ class BondQuestion(QuestionBase):
         whole, parts = species[self.species], tuple(species[name] for name in self.fragments or ())
         off = unbalanced((whole,), parts, "question.fragments")
         if sum(part.charge for part in parts) != whole.charge:
-            off += (Fault(where="question.fragments", says=f"the charges do not add up to that of {whole.name}"),)
+            off += (
+                Fault(where="question.fragments", says=f"the charges do not add up to that of {whole.name}"),
+            )
         return off
 
     def _cut_faults(self, whole: Species) -> tuple[Fault, ...]:
@@ -52,16 +56,19 @@ class BondQuestion(QuestionBase):
             says = f"{whole.name} has atoms 1 to {len(whole.atoms)}; name two different ones"
             return (Fault(where=where, says=says),)
         if whole.charge:
-            says = f"{whole.name} is charged, so the fragments' charges are not clear; name them with fragments"
+            says = (
+                f"{whole.name} is charged, so the fragments' charges are not clear; name them with fragments"
+            )
             return (Fault(where=where, says=says),)
         i, j = sorted((first - 1, second - 1))
         links = bonds(whole.atoms)
         if (i, j) not in links and len(pieces(len(whole.atoms), links)) == 1:
             apart = distance(whole.atoms[i], whole.atoms[j])
-            says = f"atoms {first} and {second} of {whole.name} are not bonded: they are {apart:.2f} angstrom apart"
+            pair = f"atoms {first} and {second} of {whole.name}"
+            says = f"{pair} are not bonded: they are {apart:.2f} angstrom apart"
             return (Fault(where=where, says=says),)
         if len(self._sides(whole)) != 2:
-            says = f"cutting {first}-{second} does not leave two pieces: the bond is part of a ring, or a piece is loose"
+            says = f"cutting {first}-{second} does not leave two pieces: it is in a ring, or a piece is loose"
             return (Fault(where=where, says=says),)
         return tuple(fault for part in self._cut_species(whole) for fault in self._spin_faults(part))
 
@@ -85,11 +92,12 @@ class BondQuestion(QuestionBase):
     def parts(self, species: Many) -> tuple[Part, ...]:
         """Both fragments minus the molecule."""
         whole = species[self.species]
-        if self.fragments:
-            pair = tuple(species[name] for name in self.fragments)
-        else:
-            pair = self._cut_species(whole)
-        return (*(Part(coefficient=1.0, species=part) for part in pair), Part(coefficient=-1.0, species=whole))
+        named = tuple(species[name] for name in self.fragments or ())
+        pair = named or self._cut_species(whole)
+        return (
+            *(Part(coefficient=1.0, species=part) for part in pair),
+            Part(coefficient=-1.0, species=whole),
+        )
 
     def subject(self, species: Many) -> tuple[Clause, ...]:
         """`of N-N in hydrazine`."""

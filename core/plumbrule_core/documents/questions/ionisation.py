@@ -32,7 +32,10 @@ class IonisationQuestion(QuestionBase):
 
     def parts(self, species: Many) -> tuple[Part, ...]:
         """After minus before."""
-        return (Part(coefficient=1.0, species=species[self.to]), Part(coefficient=-1.0, species=species[self.start]))
+        return (
+            Part(coefficient=1.0, species=species[self.to]),
+            Part(coefficient=-1.0, species=species[self.start]),
+        )
 
     def subject(self, species: Many) -> tuple[Clause, ...]:
         """`from water to water cation`."""

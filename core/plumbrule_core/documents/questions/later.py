@@ -22,7 +22,11 @@ class NotBuiltYet(QuestionBase):
 
     def own_faults(self, species: Many) -> tuple[Fault, ...]:
         """The one fault: not built yet."""
-        return (Fault(where="question.kind", says=f"a {self.label} is understood, but not built yet in this version"),)
+        return (
+            Fault(
+                where="question.kind", says=f"a {self.label} is understood, but not built yet in this version"
+            ),
+        )
 
     def parts(self, species: Many) -> tuple[Part, ...]:
         """Never asked for, since there is always a fault."""

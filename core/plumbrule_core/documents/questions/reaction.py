@@ -39,14 +39,27 @@ class ReactionQuestion(QuestionBase):
         off = {symbol: amount for symbol, amount in excess.items() if abs(amount) > 1e-9}
         if not off:
             return ()
-        words = ", ".join(f"{abs(amount):g} {symbol} too {'many' if amount > 0 else 'few'}" for symbol, amount in off.items())
-        return (Fault(where="question.terms", says=f"the reaction does not balance: on the side of the products {words}"),)
+        words = ", ".join(
+            f"{abs(amount):g} {symbol} too {'many' if amount > 0 else 'few'}"
+            for symbol, amount in off.items()
+        )
+        return (
+            Fault(
+                where="question.terms",
+                says=f"the reaction does not balance: on the side of the products {words}",
+            ),
+        )
 
     def _charge_out_of_balance(self, species: Many) -> tuple[Fault, ...]:
         excess = sum(c * species[name].charge for name, c in self.terms.items())
         if abs(excess) < 1e-9:
             return ()
-        return (Fault(where="question.terms", says=f"the charge does not balance: the products carry {excess:+g} more"),)
+        return (
+            Fault(
+                where="question.terms",
+                says=f"the charge does not balance: the products carry {excess:+g} more",
+            ),
+        )
 
     def parts(self, species: Many) -> tuple[Part, ...]:
         """Products minus reactants."""
@@ -54,11 +67,17 @@ class ReactionQuestion(QuestionBase):
 
     def subject(self, species: Many) -> tuple[Clause, ...]:
         """`of CO + H2O to CO2 + H2`."""
-        return (Clause(text=" of "), Clause(text=f"{self._side(-1, species)} to {self._side(1, species)}", key="terms"))
+        return (
+            Clause(text=" of "),
+            Clause(text=f"{self._side(-1, species)} to {self._side(1, species)}", key="terms"),
+        )
 
     def _side(self, sign: int, species: Many) -> str:
         found = [(abs(c), name) for name, c in self.terms.items() if c * sign > 0]
-        return " + ".join(f"{'' if c == 1 else f'{c:g} '}{_formula(name, species)}" for c, name in found) or "nothing"
+        return (
+            " + ".join(f"{'' if c == 1 else f'{c:g} '}{_formula(name, species)}" for c, name in found)
+            or "nothing"
+        )
 
 
 def _formula(name: str, species: Many) -> str:

@@ -27,13 +27,16 @@ class SpinGapQuestion(QuestionBase):
         if low.charge != high.charge:
             off += (Fault(where="question.high", says=f"{low.name} and {high.name} have different charges"),)
         if low.multiplicity == high.multiplicity:
-            says = f"{low.name} and {high.name} have the same multiplicity, {low.multiplicity}; a spin gap needs two"
+            says = f"{low.name} and {high.name} have the same multiplicity; a spin gap needs two"
             off += (Fault(where="question.high", says=says),)
         return off
 
     def parts(self, species: Many) -> tuple[Part, ...]:
         """High minus low."""
-        return (Part(coefficient=1.0, species=species[self.high]), Part(coefficient=-1.0, species=species[self.low]))
+        return (
+            Part(coefficient=1.0, species=species[self.high]),
+            Part(coefficient=-1.0, species=species[self.low]),
+        )
 
     def subject(self, species: Many) -> tuple[Clause, ...]:
         """`from singlet to triplet`."""

@@ -1,1 +1,1 @@
-"""The words of the program as frozen, validated values; one definition for TOML, JSON, casebook and window."""
+"""The words of the program as frozen, validated values; one definition for file, casebook and window."""

@@ -1,1 +1,1 @@
-"""..."""
+"""The four pages, in the order of the work. Each takes the desk: `XPage(desk)`."""

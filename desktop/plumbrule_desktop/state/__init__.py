@@ -1,1 +1,1 @@
-"""..."""
+"""What the window knows, without widgets: QtCore alone."""

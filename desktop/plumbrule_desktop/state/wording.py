@@ -1,0 +1,36 @@
+"""Times, sizes and numbers in words."""
+
+from plumbrule_core.documents.plan import Forecast
+
+
+def duration(seconds: float) -> str:
+    """A time as people say it: `8 s`, `6 min`, `2.5 h`, `3 days`."""
+    if seconds < 1:
+        return "less than 1 s"
+    if seconds < 90:
+        return f"{seconds:.0f} s"
+    if seconds < 90 * 60:
+        return f"{seconds / 60:.0f} min"
+    if seconds < 36 * 3600:
+        return f"{seconds / 3600:.2g} h"
+    return f"{seconds / 86400:.2g} days"
+
+
+def memory(megabytes: float) -> str:
+    """A size in MB or GB."""
+    return f"{megabytes:.0f} MB" if megabytes < 1000 else f"{megabytes / 1000:.1f} GB"
+
+
+def forecast_words(forecast: Forecast) -> str:
+    """`about 6 min, 1.2 GB`."""
+    about = "" if forecast.seconds < 1 else "about "
+    return f"{about}{duration(forecast.seconds)}, {memory(forecast.memory_mb)}"
+
+
+def forecast_details(forecast: Forecast) -> str:
+    """The range of a forecast and what it rests on."""
+    disk = f"\nScratch space on disk: {memory(forecast.disk_mb)}" if forecast.disk_mb else ""
+    return (
+        f"Time: between {duration(forecast.seconds_low)} and {duration(forecast.seconds_high)} ({forecast.sure})\n"
+        f"Memory at its peak: {memory(forecast.memory_mb)}{disk}"
+    )

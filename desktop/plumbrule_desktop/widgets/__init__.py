@@ -1,0 +1,1 @@
+"""Small painted or composed widgets that several pages share."""

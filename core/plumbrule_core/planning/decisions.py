@@ -1,0 +1,87 @@
+"""What the planner decides where the recipe says auto, and how it tells the user."""
+
+from collections.abc import Iterator
+
+from plumbrule_core.basis_sets import Basis, find
+from plumbrule_core.documents.brief import Brief
+from plumbrule_core.documents.questions import BondQuestion, EnergyQuestion
+from plumbrule_core.documents.recipe import Recipe
+from plumbrule_core.documents.species import Species, spin_words
+from plumbrule_core.planning.sizes import elements_of, frozen_of, functions_of
+
+FITTING_FROM = 300
+"""Basis functions of the largest species from which density fitting is chosen: common practice, no source."""
+
+
+def sets_of(recipe: Recipe) -> tuple[Basis, ...]:
+    """The basis sets of a recipe whose names are known."""
+    return tuple(basis for basis in map(find, recipe.basis) if basis is not None)
+
+
+def fits_density(recipe: Recipe, species: tuple[Species, ...]) -> bool:
+    """Whether the integrals are fitted: one decision, so that all energies stay comparable."""
+    if recipe.density_fitting != "auto":
+        return recipe.density_fitting == "yes"
+    return _largest(recipe, species) > FITTING_FROM and not _unfitted(recipe, species)
+
+
+def _largest(recipe: Recipe, species: tuple[Species, ...]) -> int:
+    return max(functions_of(one, basis) for one in species for basis in sets_of(recipe))
+
+
+def _unfitted(recipe: Recipe, species: tuple[Species, ...]) -> tuple[str, ...]:
+    return tuple(s for s in elements_of(species) if not all(basis.fits((s,)) for basis in sets_of(recipe)))
+
+
+def notes(
+    brief: Brief, species: tuple[Species, ...], rungs: tuple[str, ...], fitting: bool
+) -> tuple[str, ...]:
+    """The decisions in words: what was added, proposed, chosen and left out."""
+    return (
+        *_added(brief.recipe, rungs),
+        *_spin_states(brief, species),
+        *_fitting(brief.recipe, species, fitting),
+        *_active_space(brief.recipe),
+        *_left_out(brief, species),
+    )
+
+
+def _added(recipe: Recipe, rungs: tuple[str, ...]) -> Iterator[str]:
+    added = [name for name in rungs if name not in recipe.rungs]
+    if added:
+        yield f"{', '.join(added)} was added, because the rungs that were asked for stand on it."
+
+
+def _spin_states(brief: Brief, species: tuple[Species, ...]) -> Iterator[str]:
+    question = brief.question
+    if not isinstance(question, BondQuestion) or not question.cut or question.fragment_multiplicities:
+        return
+    for one in species:
+        if one.name not in brief.by_name:
+            spin = spin_words(one.multiplicity)
+            yield f"{one.name} ({one.formula}) is taken as {spin}: its proposed ground state."
+
+
+def _fitting(recipe: Recipe, species: tuple[Species, ...], fitting: bool) -> Iterator[str]:
+    if fitting:
+        why = (
+            "as the recipe asks"
+            if recipe.density_fitting == "yes"
+            else f"above {FITTING_FROM} basis functions"
+        )
+        yield f"Density fitting is used throughout, {why}; it shifts total energies by about 2e-5 hartree."
+    elif recipe.density_fitting == "auto" and _largest(recipe, species) > FITTING_FROM:
+        yield f"No density fitting: there is no fitting set for {', '.join(_unfitted(recipe, species))}."
+
+
+def _active_space(recipe: Recipe) -> Iterator[str]:
+    if recipe.active_space is not None and recipe.active_space.choice == "propose":
+        yield "No active space is proposed: not built yet in this version, and no rung of the recipe uses one."
+
+
+def _left_out(brief: Brief, species: tuple[Species, ...]) -> Iterator[str]:
+    if not isinstance(brief.question, EnergyQuestion):
+        yield "The answer is an electronic energy: zero-point and thermal energies are not included."
+    frozen = any(frozen_of(one, basis) for one in species for basis in sets_of(brief.recipe))
+    if brief.recipe.core == "frozen" and frozen:
+        yield "Core electrons are left out of the correlation treatment (frozen core)."

@@ -1,0 +1,48 @@
+"""How large a calculation is: the counts that its price depends on."""
+
+from plumbrule_core.basis_sets import BASES, Basis, frozen_orbitals
+from plumbrule_core.documents.plan import Settings
+from plumbrule_core.documents.species import Species
+from plumbrule_core.rungs.protocol import Size
+
+
+def symbols_of(species: Species) -> tuple[str, ...]:
+    """The element of every atom."""
+    return tuple(atom.symbol for atom in species.atoms)
+
+
+def elements_of(species: tuple[Species, ...]) -> tuple[str, ...]:
+    """Every element of these species, once."""
+    return tuple(sorted({symbol for one in species for symbol in symbols_of(one)}))
+
+
+def functions_of(species: Species, basis: Basis) -> int:
+    """The number of basis functions of a species."""
+    return basis.functions(symbols_of(species))
+
+
+def frozen_of(species: Species, basis: Basis) -> int:
+    """The number of orbitals that a frozen core leaves out."""
+    return frozen_orbitals(symbols_of(species), basis)
+
+
+def explicit_electrons(species: Species, basis: Basis) -> int:
+    """The electrons that no core potential of the basis replaces."""
+    return species.electrons - sum(basis.potential_electrons(symbol) for symbol in symbols_of(species))
+
+
+def size_of(species: Species, settings: Settings) -> Size:
+    """The counts of one species at one level."""
+    basis = BASES[settings.basis]
+    functions = functions_of(species, basis)
+    frozen = frozen_of(species, basis) if settings.core == "frozen" else 0
+    majority = (explicit_electrons(species, basis) + species.unpaired) // 2
+    return Size(
+        atoms=len(species.atoms),
+        functions=functions,
+        occupied=max(majority - frozen, 0),
+        virtual=max(functions - majority, 0),
+        frozen=frozen,
+        unrestricted=settings.reference == "UHF" or species.multiplicity > 1,
+        density_fitting=settings.density_fitting,
+    )

@@ -72,8 +72,8 @@ def _core(basis: Basis, recipe: Recipe, species: Many) -> Iterator[Fault]:
     if cored:
         partner = f", or basis = '{basis.core_partner}'" if basis.core_partner else ""
         says = (
-            f"'all' would correlate the core electrons of {', '.join(cored)}, but {basis.name} is made for the "
-            f"valence alone and would describe them badly; use core = 'frozen'{partner}"
+            f"'all' would correlate the core electrons of {', '.join(cored)}, but {basis.name} is made for "
+            f"the valence alone and would describe them badly; use core = 'frozen'{partner}"
         )
         yield Fault(where="recipe.core", says=says)
 
@@ -94,7 +94,7 @@ def _relativity(basis: Basis, recipe: Recipe, species: Many) -> Iterator[Fault]:
     if recipe.relativity == "X2C" and replaced:
         says = (
             f"X2C needs every electron, but {basis.name} replaces the core of {', '.join(replaced)} by a "
-            "potential that already holds the relativistic effects; use relativity = 'none' or a set without a potential"
+            "potential that already holds the relativistic effects; use 'none' or a set without one"
         )
         yield Fault(where="recipe.relativity", says=says)
 

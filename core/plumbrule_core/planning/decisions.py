@@ -76,7 +76,7 @@ def _fitting(recipe: Recipe, species: tuple[Species, ...], fitting: bool) -> Ite
 
 def _active_space(recipe: Recipe) -> Iterator[str]:
     if recipe.active_space is not None and recipe.active_space.choice == "propose":
-        yield "No active space is proposed: not built yet in this version, and no rung of the recipe uses one."
+        yield "No active space is proposed: not built yet in this version, and no rung here uses one."
 
 
 def _left_out(brief: Brief, species: tuple[Species, ...]) -> Iterator[str]:

@@ -1,6 +1,10 @@
 """Times, sizes and numbers in words."""
 
+import math
+
+from plumbrule_core.documents.findings import Answer
 from plumbrule_core.documents.plan import Forecast
+from plumbrule_core.units import EnergyUnit
 
 
 def duration(seconds: float) -> str:
@@ -34,3 +38,20 @@ def forecast_details(forecast: Forecast) -> str:
         f"Time: between {duration(forecast.seconds_low)} and {duration(forecast.seconds_high)} ({forecast.sure})\n"
         f"Memory at its peak: {memory(forecast.memory_mb)}{disk}"
     )
+
+
+def number(value: float, unit: EnergyUnit, uncertainty: float | None = None) -> str:
+    """A value to the digits that its uncertainty (or else its unit) leaves meaning: `941.2`, `-76.24131`."""
+    if uncertainty:
+        digits = max(0, min(8, 1 - math.floor(math.log10(uncertainty))))
+    else:
+        digits = {"hartree": 5, "eV": 3, "cm-1": 0}.get(unit, 1)
+    return f"{value:.{digits}f}"
+
+
+def answer_words(answer: Answer) -> str:
+    """`941.2 \u00b1 6.3 kJ/mol`."""
+    value = number(answer.value, answer.unit, answer.uncertainty)
+    if answer.uncertainty is None:
+        return f"{value} {answer.unit}"
+    return f"{value} \u00b1 {number(answer.uncertainty, answer.unit, answer.uncertainty)} {answer.unit}"

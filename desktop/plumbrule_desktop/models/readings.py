@@ -1,0 +1,88 @@
+"""The readings of every species with the threshold that a finding held them against."""
+
+from plumbrule_core.documents.findings import Evidence, Finding, Judgement
+from plumbrule_core.documents.results import Reading, ReadingValue
+from plumbrule_core.documents.run_state import TaskState
+from plumbrule_desktop.plots.series import Numbers
+from plumbrule_desktop.state.amounts import MINUS
+
+HEADER = ("Species", "Reading", "Value", "Limit", "What it means here")
+NAMES = {
+    "s2": "Spin square <S\u00b2>",
+    "s2_ideal": "Spin square it should have",
+    "s2_excess": "Spin square in excess",
+    "stable": "Orbitals are a minimum",
+    "stable_external": "No unrestricted solution lower",
+    "instability_depth": "Depth of the unrestricted solution",
+    "uhf_natural_occupations": "Unrestricted natural occupations",
+    "uhf_fractional": "Most fractional occupation",
+    "homo_lumo_gap": "Gap between highest occupied and lowest empty orbital",
+    "overlap_condition": "Smallest overlap eigenvalue of the basis",
+    "removed_functions": "Basis functions removed as dependent",
+    "natural_occupations": "MP2 natural occupations",
+    "M": "M of the natural occupations",
+    "mp2_largest_t2": "Largest first-order doubles amplitude",
+    "c0_squared": "Weight of the leading determinant",
+    "T1": "T1",
+    "D1": "D1",
+    "D2": "D2",
+    "largest_t1": "Largest singles amplitude",
+    "largest_t2": "Largest doubles amplitude",
+    "share_of_triples": "Share of triples in the correlation energy",
+    "triples": "Triples correction (T)",
+}
+
+
+def reading_name(name: str) -> str:
+    """The reading in words; one that is not known here keeps its own name."""
+    return NAMES.get(name, name.replace("_", " "))
+
+
+def value_words(value: ReadingValue | str, unit: str = "") -> str:
+    """A value with its unit; of a list the values that say most, those away from 0 and 2."""
+    behind = f" {unit}" if unit else ""
+    if isinstance(value, bool):
+        return "yes" if value else "no"
+    if isinstance(value, str):
+        return f"{value}{behind}"
+    if isinstance(value, float | int):
+        return f"{value:.4g}".replace("-", MINUS) + behind
+    telling = [one for one in value if 0.02 < one < 1.98] or list(value)
+    shown = ", ".join(f"{one:.2f}" for one in telling[:6])
+    return f"{shown}{' \u2026' if len(telling) > 6 else ''}{behind}"
+
+
+def readings_table(judgement: Judgement) -> Numbers:
+    """One row for each reading of each species; what a finding said of it stands beside it."""
+    rows = tuple(
+        _row(species.name, reading, judgement.findings)
+        for species in judgement.species
+        for reading in species.readings
+    )
+    return Numbers(HEADER, rows)
+
+
+def task_readings(task: TaskState) -> Numbers:
+    """The readings of one task as they come."""
+    rows = tuple((reading_name(one.name), value_words(one.value, one.unit)) for one in task.readings)
+    return Numbers(("Reading", "Value"), rows)
+
+
+def _row(species: str, reading: Reading, findings: tuple[Finding, ...]) -> tuple[str, ...]:
+    held = _held_against(species, reading.name, findings)
+    limit, meaning = "", ""
+    if held is not None:
+        finding, evidence = held
+        limit = "" if evidence.threshold is None else value_words(evidence.threshold, evidence.unit)
+        meaning = finding.headline
+    return (species, reading_name(reading.name), value_words(reading.value, reading.unit), limit, meaning)
+
+
+def _held_against(species: str, name: str, findings: tuple[Finding, ...]) -> tuple[Finding, Evidence] | None:
+    for finding in findings:
+        if finding.species not in ("", species):
+            continue
+        for evidence in finding.evidence:
+            if evidence.reading == name:
+                return finding, evidence
+    return None

@@ -1,0 +1,104 @@
+"""Whether 3-D can be drawn here: asked once of a child process, and remembered."""
+
+import os
+import sys
+from importlib.metadata import PackageNotFoundError, version
+from pathlib import Path
+
+from PySide6.QtCore import QObject, QProcess, QProcessEnvironment, QTimer, Signal
+
+from plumbrule_desktop.settings import Settings
+
+YES = "yes"
+PROBE_MS = 30_000
+PROBE_FLAG = "--probe-3d"
+"""A frozen program has no interpreter to hand the probe's file to: it is started again with this flag."""
+
+
+def force_software_path() -> None:
+    """Without an X display, have VTK skip the attempt at one."""
+    if sys.platform.startswith("linux") and not os.environ.get("DISPLAY"):
+        os.environ.setdefault("VTK_DEFAULT_OPENGL_WINDOW", "vtkEGLRenderWindow")
+
+
+class ThreeD(QObject):
+    """Answers once with `known(answer)`: `yes`, or the reason why not."""
+
+    known = Signal(str)
+
+    def __init__(self, settings: Settings, parent: QObject | None = None) -> None:
+        super().__init__(parent)
+        self._settings = settings
+        self._process: QProcess | None = None
+        self._answer: str | None = None
+        self._limit = QTimer(self, singleShot=True, interval=PROBE_MS)
+        self._limit.timeout.connect(lambda: self._ended("drawing one frame took too long"))
+
+    @property
+    def answer(self) -> str | None:
+        """The answer, or None while it is not known."""
+        return self._answer
+
+    def ask(self) -> None:
+        """Answer from memory, or start the child process."""
+        if self._answer is not None or self._process is not None:
+            return
+        force_software_path()
+        kept = self._settings.three_d(_circumstances())
+        if kept == YES:
+            self._ended(kept)
+            return
+        self._process = QProcess(self)
+        environment = QProcessEnvironment.systemEnvironment()
+        environment.insert("VTK_DEFAULT_OPENGL_WINDOW", os.environ.get("VTK_DEFAULT_OPENGL_WINDOW", ""))
+        self._process.setProcessEnvironment(environment)
+        self._process.finished.connect(self._finished)
+        self._process.errorOccurred.connect(self._could_not_start)
+        program, *arguments = _command()
+        self._process.start(program, arguments)
+        self._limit.start()
+
+    def close(self) -> None:
+        """End a probe that still runs."""
+        self._limit.stop()
+        process, self._process = self._process, None
+        if process is not None and process.state() != QProcess.ProcessState.NotRunning:
+            process.finished.disconnect()
+            process.errorOccurred.disconnect()
+            process.kill()
+            process.waitForFinished(1000)
+
+    def _could_not_start(self, error: QProcess.ProcessError) -> None:
+        if error == QProcess.ProcessError.FailedToStart:
+            self._ended("the test for it could not be started")
+
+    def _finished(self, code: int, status: QProcess.ExitStatus) -> None:
+        if status == QProcess.ExitStatus.CrashExit:
+            self._ended("there is no OpenGL that works (the test ended abruptly)")
+        else:
+            self._ended(YES if code == 0 else "OpenGL draws nothing here")
+
+    def _ended(self, answer: str) -> None:
+        if self._answer is not None:
+            return
+        self._answer = answer
+        self.close()
+        if answer == YES:
+            self._settings.remember_three_d(_circumstances(), answer)
+        self.known.emit(answer)
+
+
+def _command() -> list[str]:
+    if getattr(sys, "frozen", False):
+        return [sys.executable, PROBE_FLAG]
+    return [sys.executable, str(Path(__file__).with_name("probe.py"))]
+
+
+def _circumstances() -> str:
+    """A new library or another display asks anew; a refusal is never remembered."""
+    try:
+        library = version("vtk")
+    except PackageNotFoundError:
+        library = "unknown"
+    display = "display" if os.environ.get("DISPLAY") else "none"
+    return f"{library}-{display}".replace("/", "_")

@@ -1,1 +1,16 @@
-"""..."""
+"""The rungs of the ladder; `RUNGS` is the one list."""
+
+from collections.abc import Mapping
+from types import MappingProxyType
+
+from plumbrule_core.rungs.ccsd import CCSD
+from plumbrule_core.rungs.ccsd_t import CCSDT
+from plumbrule_core.rungs.cisd import CISD
+from plumbrule_core.rungs.hartree_fock import HartreeFock
+from plumbrule_core.rungs.mp2 import MP2
+from plumbrule_core.rungs.protocol import Rung
+
+_ALL: tuple[Rung, ...] = (HartreeFock(), MP2(), CISD(), CCSD(), CCSDT())
+
+RUNGS: Mapping[str, Rung] = MappingProxyType({rung.name: rung for rung in _ALL})
+"""Every method by its name."""

@@ -61,19 +61,41 @@ class Outcome:
     arrays: Mapping[str, np.ndarray] = field(default_factory=dict)
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Stability:
+    """Whether the Hartree-Fock solution is a minimum, and what lies below a restricted one."""
+
+    internal: bool
+    """No lower solution of the same kind starts here (after following)."""
+    external: bool | None = None
+    """Restricted closed shells alone: no unrestricted solution starts here."""
+    depth: float | None = None
+    """How far the unrestricted solution lies below the restricted one, in hartree; 0 where none does."""
+    natural_occupations: tuple[float, ...] | None = None
+    """Natural occupations of the unrestricted solution, largest first; None for ROHF."""
+
+
 @dataclass(slots=True)
 class Bench:
     """Live library objects that the tasks of one chain share inside one worker; never sent anywhere."""
 
     molecule: Any = None
     mean_field: Any = None
+    stability: Stability | None = None
+    """Left by the HF rung, so that the readings need not analyse again."""
+    correlated_reference: Any = None
+    """The mean field that correlation starts from: for ROHF its semicanonical unrestricted form."""
     frozen: int = 0
     """Number of frozen core orbitals."""
     perturbation: Any = None
     """The MP2 object, with its amplitudes."""
     integrals: Any = None
     """Transformed integrals, shared by CISD, CCSD and (T)."""
+    configuration_interaction: Any = None
+    """The CISD object, with its vector."""
     coupled_cluster: Any = None
+    triples: float | None = None
+    """The (T) correction in hartree."""
     outcomes: dict[str, Outcome] = field(default_factory=dict)
 
 

@@ -21,7 +21,9 @@ def put(db: sqlite3.Connection, npy: bytes) -> ArrayRef:
     """Keep the array and name it; raises CasebookError where the bytes are no plain array."""
     array = _unpacked(npy, "an array")
     name = name_of(npy)
-    db.execute("INSERT OR REPLACE INTO blobs VALUES (?, ?)", (name, zlib.compress(npy, COMPRESSION)))
+    db.execute(
+        "INSERT OR REPLACE INTO blobs (name, packed) VALUES (?, ?)", (name, zlib.compress(npy, COMPRESSION))
+    )
     return ArrayRef(blob=name, shape=array.shape, dtype=str(array.dtype))
 
 

@@ -93,6 +93,6 @@ def _place(db: sqlite3.Connection, step: Step, text: str | None) -> None:
         db.execute("DELETE FROM briefs WHERE id = ?", (step.brief,))
     else:
         db.execute(
-            "INSERT OR REPLACE INTO briefs VALUES (?, ?, ?, ?)",
+            "INSERT OR REPLACE INTO briefs (id, position, document, digest) VALUES (?, ?, ?, ?)",
             (step.brief, step.position, text, digest_of_row(step.brief, text)),
         )

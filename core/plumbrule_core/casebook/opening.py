@@ -123,7 +123,9 @@ def _create(path: Path) -> None:
         with closing(connect(beside, "rwc")) as db:
             migrations.create(db)
             with transaction(db):
-                db.execute("INSERT INTO meta VALUES ('created by', ?)", (plumbrule_core.__version__,))
+                db.execute(
+                    "INSERT INTO meta (key, value) VALUES ('created by', ?)", (plumbrule_core.__version__,)
+                )
         beside.replace(path)
     finally:
         beside.unlink(missing_ok=True)
@@ -147,6 +149,8 @@ def _writing(path: Path) -> sqlite3.Connection:
     try:
         db.execute("PRAGMA journal_mode = WAL")
         db.execute("PRAGMA synchronous = FULL")
+        # Only a first read opens the log; without it, one that a reader made meanwhile would stay at close.
+        db.execute("SELECT count(*) FROM meta").fetchone()
     except BaseException:
         db.close()
         raise

@@ -89,11 +89,11 @@ class Casebook:
 
     def refresh(self) -> None:
         """See what the writer has finished since; nothing to do where this one is the writer."""
-        with self._guard:
+        with self._reading():
             path = self._opened.path
             if not self.read_only or path is None:
                 return
-            with self._reading(), in_words(f"{path.name} cannot be read again"):
+            with in_words(f"{path.name} cannot be read again"):
                 older, self._opened = self._opened, opening.picture(path, self.why_read_only)
                 opening.close(older)
 
@@ -167,15 +167,19 @@ class Casebook:
         text = result.to_json()
         now = datetime.now(UTC).isoformat(timespec="seconds")
         with self._writing() as db:
-            row = (result.task, text, digest_of_row(result.task, text), now)
-            db.execute("INSERT OR REPLACE INTO results VALUES (?, ?, ?, ?)", row)
+            db.execute(
+                "INSERT OR REPLACE INTO results (task, document, digest, created) VALUES (?, ?, ?, ?)",
+                (result.task, text, digest_of_row(result.task, text), now),
+            )
 
     def put_task_state(self, state: TaskState) -> None:
         """Keep a task's trace and log, in place of the last ones."""
         text = state.to_json()
         with self._writing() as db:
-            row = (state.task, text, digest_of_row(state.task, text))
-            db.execute("INSERT OR REPLACE INTO task_states VALUES (?, ?, ?)", row)
+            db.execute(
+                "INSERT OR REPLACE INTO task_states (task, document, digest) VALUES (?, ?, ?)",
+                (state.task, text, digest_of_row(state.task, text)),
+            )
 
     def task_states(self, ids: Iterable[str]) -> dict[str, TaskState]:
         """The kept traces and logs of these tasks, without what is missing or damaged."""

@@ -27,3 +27,21 @@
 A reading that is not defined for a case (no pairs to correlate, an open shell) is absent, never zero.
 `c0_squared` of an active-space solve and the share of the atomisation energy are taken elsewhere.
 """
+
+from plumbrule_core.documents.plan import TaskSpec
+from plumbrule_core.documents.results import Reading
+from plumbrule_core.judgement.readings.amplitudes import AMPLITUDES
+from plumbrule_core.judgement.readings.configuration import CONFIGURATION
+from plumbrule_core.judgement.readings.family import Family
+from plumbrule_core.judgement.readings.occupations import OCCUPATIONS
+from plumbrule_core.judgement.readings.reference import REFERENCE
+from plumbrule_core.judgement.readings.triples import TRIPLES
+from plumbrule_core.rungs.protocol import Bench
+
+READINGS: tuple[Family, ...] = (REFERENCE, OCCUPATIONS, CONFIGURATION, AMPLITUDES, TRIPLES)
+"""Every family of readings."""
+
+
+def take(rung: str, bench: Bench, spec: TaskSpec) -> tuple[Reading, ...]:
+    """What can be read once this rung has been computed on this bench; the worker calls it after each rung."""
+    return tuple(reading for family in READINGS if family.after == rung for reading in family.measure(bench, spec))

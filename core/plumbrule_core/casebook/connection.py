@@ -1,6 +1,7 @@
 """Connections to a casebook's file, transactions, and SQLite's troubles in words."""
 
 import sqlite3
+import time
 from collections.abc import Iterator
 from contextlib import closing, contextmanager
 from pathlib import Path
@@ -35,6 +36,19 @@ def connect(path: Path, mode: Literal["ro", "rw", "rwc"]) -> sqlite3.Connection:
     db.text_factory = lambda raw: raw.decode("utf-8", "replace")
     db.execute("PRAGMA trusted_schema = OFF")
     return db
+
+
+def set_journal(db: sqlite3.Connection, mode: Literal["WAL", "DELETE"]) -> None:
+    """Change how changes are kept; waits here for readers to end, since SQLite does not wait at this."""
+    last = time.monotonic() + PATIENCE
+    while True:
+        try:
+            db.execute(f"PRAGMA journal_mode = {mode}")
+            return
+        except sqlite3.OperationalError as error:
+            if not error.sqlite_errorname.startswith("SQLITE_BUSY") or time.monotonic() > last:
+                raise
+        time.sleep(0.01)
 
 
 @contextmanager

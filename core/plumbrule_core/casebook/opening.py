@@ -10,7 +10,7 @@ from pathlib import Path
 
 import plumbrule_core
 from plumbrule_core.casebook import checks, migrations
-from plumbrule_core.casebook.connection import connect, copy_into, in_words, transaction
+from plumbrule_core.casebook.connection import connect, copy_into, in_words, set_journal, transaction
 from plumbrule_core.casebook.lock import NoLock, WriterLock
 from plumbrule_core.errors import CasebookError
 
@@ -138,7 +138,6 @@ def _prepare(path: Path) -> Path | None:
     with closing(connect(path, "rw" if interrupted else "ro")) as db:
         checks.check_content(path.name, db)
     with closing(connect(path, "rw")) as db:
-        db.execute("PRAGMA journal_mode = DELETE")
         kept = migrations.upgrade_file(db, path)
         checks.check_layout(path.name, db)
     return kept
@@ -147,7 +146,7 @@ def _prepare(path: Path) -> Path | None:
 def _writing(path: Path) -> sqlite3.Connection:
     db = connect(path, "rw")
     try:
-        db.execute("PRAGMA journal_mode = WAL")
+        set_journal(db, "WAL")
         db.execute("PRAGMA synchronous = FULL")
         # Only a first read opens the log; without it, one that a reader made meanwhile would stay at close.
         db.execute("SELECT count(*) FROM meta").fetchone()
@@ -159,9 +158,9 @@ def _writing(path: Path) -> sqlite3.Connection:
 
 def _fold_log(db: sqlite3.Connection) -> None:
     try:
-        db.execute("PRAGMA journal_mode = DELETE")
+        set_journal(db, "DELETE")
     except sqlite3.OperationalError:
-        # A full disk, or a reader at work: the log stays beside the file and loses nothing.
+        # A full disk, or a reader that does not end: the log stays beside the file and loses nothing.
         return
 
 

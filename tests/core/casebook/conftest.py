@@ -5,6 +5,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 
+from plumbrule_core.casebook import Casebook
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.questions import EnergyQuestion
 from plumbrule_core.documents.results import ArrayRef, Reading, Result
@@ -63,3 +64,13 @@ def npy() -> Callable[[object], bytes]:
         return buffer.getvalue()
 
     return make
+
+
+@pytest.fixture
+def closed(tmp_path: Path, result: Callable[..., Result]) -> Path:
+    path = tmp_path / "closed.plumb"
+    with Casebook.open(path) as book:
+        book.add_brief(Brief(title="one"), "Add")
+        for n in range(20):
+            book.put_result(result(f"t{n}"))
+    return path

@@ -1,1 +1,31 @@
-"""..."""
+"""The rules: each draws findings from readings; `RULES` is the one list."""
+
+from plumbrule_core.judgement.rules import (
+    amplitudes,
+    basis,
+    convergence,
+    correlation,
+    cost,
+    ladder,
+    one_determinant,
+    reference,
+    shape,
+    spin,
+    target,
+)
+from plumbrule_core.judgement.rules.base import Rule
+
+RULES: tuple[Rule, ...] = (
+    *one_determinant.RULES,
+    *convergence.RULES,
+    *reference.RULES,
+    *spin.RULES,
+    *amplitudes.RULES,
+    *correlation.RULES,
+    *ladder.RULES,
+    *shape.RULES,
+    *basis.RULES,
+    *cost.RULES,
+    *target.RULES,
+)
+"""Every rule, in the order in which findings of equal severity are shown."""

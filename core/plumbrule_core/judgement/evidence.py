@@ -1,0 +1,138 @@
+"""Does one determinant describe a species? Independent families of readings, each graded 0 to 3.
+
+No single reading decides. The families are the stability of the reference, the doubles and the singles
+amplitudes, the weight of the triples, the natural occupations, and the spin. Grades: 0 calm, 1 raised,
+2 serious, 3 broken. Published limits where there are any; how far beyond them a reading must lie to be serious
+is our own calibration (`thresholds.json` names each).
+"""
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+
+from plumbrule_core.documents.findings import Evidence
+from plumbrule_core.judgement.case import Case, SpeciesView
+from plumbrule_core.judgement.thresholds import THRESHOLDS, Threshold
+
+Limits = tuple[str, ...]
+"""Names of thresholds for grades 1, 2, 3."""
+
+
+@dataclass(frozen=True, slots=True)
+class Grade:
+    """How one family speaks, with the readings that made it."""
+
+    family: str
+    grade: int
+    evidence: tuple[Evidence, ...] = ()
+
+
+def evidence_of(reading: str, value: float, limit: Threshold) -> Evidence:
+    """One reading beside the limit it passed."""
+    return Evidence(reading=reading, value=value, threshold=limit.value, unit=limit.unit, source=limit.source)
+
+
+def _grade(reading: str, value: float | None, limits: Limits) -> tuple[int, tuple[Evidence, ...]]:
+    if value is None:
+        return 0, ()
+    passed = [THRESHOLDS[name] for name in limits if value > THRESHOLDS[name].value]
+    return len(passed), (evidence_of(reading, value, passed[0]),) if passed else ()
+
+
+def _worst(family: str, *graded: tuple[int, tuple[Evidence, ...]]) -> Grade:
+    return Grade(family, max(g for g, _ in graded), tuple(one for _, shown in graded for one in shown))
+
+
+def reference_grade(view: SpeciesView) -> Grade:
+    """The stability of a restricted reference: how deep the unrestricted solution lies, and how unpaired it is."""
+    depth, unpaired = view.number("instability_depth"), view.number("uhf_fractional")
+    if not view.closed_shell or depth is None or depth <= THRESHOLDS["instability_depth_care"].value:
+        return Grade("reference", 0)
+    shown = [evidence_of("instability_depth", depth, THRESHOLDS["instability_depth_care"])]
+    grade = 1
+    if unpaired is not None and unpaired > THRESHOLDS["uhf_fractional_serious"].value:
+        diradical = unpaired > THRESHOLDS["uhf_fractional_diradical"].value
+        deep = depth > THRESHOLDS["instability_depth_broken"].value
+        grade = 3 if diradical or deep else 2
+        limit = "uhf_fractional_diradical" if diradical else "uhf_fractional_serious"
+        shown.append(evidence_of("uhf_fractional", unpaired, THRESHOLDS[limit]))
+    return Grade("reference", grade, tuple(shown))
+
+
+def doubles_grade(view: SpeciesView) -> Grade:
+    """The largest doubles amplitude (of CCSD, else of MP2) and D2."""
+    name = "largest_t2" if view.number("largest_t2") is not None else "mp2_largest_t2"
+    return _worst(
+        "doubles",
+        _grade(name, view.number(name), ("t2_notable", "t2_serious", "t2_broken")),
+        _grade("D2", view.number("D2"), ("d2",)),
+    )
+
+
+def singles_limits(view: SpeciesView) -> tuple[str, str]:
+    """Which limits of T1 and of D1 fit the species."""
+    if view.has_metal:
+        return "t1_metal", "d1_metal"
+    return ("t1_closed", "d1") if view.closed_shell else ("t1_open", "d1_open")
+
+
+def singles_grade(view: SpeciesView) -> Grade:
+    """T1 and D1 with the limits that fit the species; twice the limit of both, or a huge T1, is more."""
+    t1_limit, d1_limit = singles_limits(view)
+    t1, d1 = view.number("T1"), view.number("D1")
+    graded = _worst("singles", _grade("T1", t1, (t1_limit,)), _grade("D1", d1, (d1_limit,)))
+    if not graded.grade or t1 is None or d1 is None:
+        return graded
+    twice = t1 > 2 * THRESHOLDS[t1_limit].value and d1 > 2 * THRESHOLDS[d1_limit].value
+    huge = t1 > THRESHOLDS["t1_broken"].value
+    grade = 3 if huge and view.closed_shell else 2 if huge or twice else 1
+    return Grade("singles", grade, graded.evidence)
+
+
+def triples_grade(view: SpeciesView, case: Case) -> Grade:
+    """The weight of (T): in the atomisation energy where the atoms were computed, and in the correlation energy."""
+    shares = ("share_of_triples_raised", "share_of_triples_serious", "share_of_triples_broken")
+    return _worst(
+        "triples",
+        _grade("%TAE[(T)]", case.tae_triples(view), ("tae_moderate", "tae_severe")),
+        _grade("share_of_triples", view.share_of_triples, shares),
+    )
+
+
+def occupations_grade(view: SpeciesView) -> Grade:
+    """How far the MP2 natural occupations are from two and none, as M."""
+    return _worst("occupations", _grade("M", view.number("M"), ("m_large", "m_serious")))
+
+
+def spin_grade(view: SpeciesView) -> Grade:
+    """How far <S^2> lies above that of the spin state."""
+    return _worst("spin", _grade("s2_excess", view.number("s2_excess"), ("spin_care", "spin_stop")))
+
+
+def grades(case: Case, view: SpeciesView) -> tuple[Grade, ...]:
+    """Every family; all calm where CCSD is exact whatever the reference."""
+    if view.exact_from_ccsd:
+        return ()
+    plain: tuple[Callable[[SpeciesView], Grade], ...] = (
+        reference_grade,
+        doubles_grade,
+        singles_grade,
+        occupations_grade,
+        spin_grade,
+    )
+    return (*(family(view) for family in plain), triples_grade(view, case))
+
+
+def corroborated(case: Case, view: SpeciesView, family: str) -> bool:
+    """Whether another family than this one is raised as well."""
+    return any(one.grade and one.family != family for one in grades(case, view))
+
+
+FAMILY_WORDS: Mapping[str, str] = {
+    "reference": "its Hartree-Fock reference is unstable",
+    "doubles": "a pair of electrons is excited strongly",
+    "singles": "the orbitals want to change",
+    "triples": "triple excitations weigh heavily",
+    "occupations": "orbitals are far from doubly occupied or empty",
+    "spin": "the reference is not a clean spin state",
+}
+"""What each family says, in words."""

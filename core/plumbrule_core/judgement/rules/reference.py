@@ -1,0 +1,137 @@
+"""The Hartree-Fock reference: is it the right solution, and a stable one?"""
+
+from plumbrule_core.documents.findings import Evidence, Finding
+from plumbrule_core.judgement.case import Case, SpeciesView
+from plumbrule_core.judgement.evidence import evidence_of
+from plumbrule_core.judgement.rules.base import Rule, each
+from plumbrule_core.judgement.rules.example import Example, Molecule, measured
+from plumbrule_core.judgement.rules.remedies import active_space, change
+from plumbrule_core.judgement.thresholds import THRESHOLDS
+from plumbrule_core.judgement.wording import amount
+
+ARITHMETIC = "the second derivative of the Hartree-Fock energy"
+
+
+def _saddle(case: Case, view: SpeciesView) -> Finding | None:
+    if view.flag("stable") is not False:
+        return None
+    return Finding(
+        code="hf-saddle",
+        severity="stop",
+        species=view.name,
+        rungs=case.single_reference,
+        headline=f"The Hartree-Fock solution of {view.name} is not a minimum.",
+        consequence="A lower solution exists and could not be reached, so every number above it stands on the wrong one.",
+        evidence=(Evidence(reading="stable", value="no", source=ARITHMETIC),),
+        remedies=() if case.recipe.reference == "UHF" else (change("Use UHF and run", "recipe.reference", "UHF", True),),
+    )
+
+
+def _followed(case: Case, view: SpeciesView) -> Finding | None:
+    said = [note for (rung, _), result in view.results.items() if rung == "HF" for note in result.notes]
+    told = [note for note in dict.fromkeys(said) if "followed" in note.lower()]
+    if not told:
+        return None
+    return Finding(
+        code="hf-followed",
+        severity="note",
+        species=view.name,
+        headline=f"The first Hartree-Fock solution of {view.name} was not the lowest.",
+        consequence="It was followed down, and everything above stands on the lower solution. On a curve, the same "
+        "solution must be used at every point.",
+        evidence=tuple(Evidence(reading="Hartree-Fock", value=note[:400]) for note in told),
+    )
+
+
+def _unstable(case: Case, view: SpeciesView) -> Finding | None:
+    depth, limit = view.number("instability_depth"), THRESHOLDS["instability_depth_note"]
+    if depth is None or depth <= limit.value:
+        return None
+    deep = depth > THRESHOLDS["instability_depth_care"].value
+    below_ccsd = tuple(name for name in case.single_reference if name in ("HF", "MP2"))
+    shown = [evidence_of("instability_depth", depth, THRESHOLDS["instability_depth_care"] if deep else limit)]
+    if (unpaired := view.number("uhf_fractional")) is not None:
+        shown.append(Evidence(reading="uhf_fractional", value=unpaired, unit="electrons"))
+    return Finding(
+        code="hf-unstable-external",
+        severity="care" if deep else "note",
+        species=view.name,
+        rungs=below_ccsd if view.exact_from_ccsd else case.single_reference,
+        headline=f"{view.name}: an unrestricted solution lies {amount(depth, case.unit)} below the restricted one.",
+        consequence=(
+            "The electron pairs are loosening; coupled cluster often repairs this, MP2 does not."
+            if deep
+            else "So little that it does not show in the number; it is the earliest sign of a loosening pair."
+        ),
+        evidence=tuple(shown),
+        remedies=active_space(case) if deep else (),
+    )
+
+
+def _gap(case: Case, view: SpeciesView) -> Finding | None:
+    gap, limit = view.number("homo_lumo_gap"), THRESHOLDS["gap_small"]
+    if gap is None or gap >= limit.value:
+        return None
+    return Finding(
+        code="gap-small",
+        severity="care" if gap < 0 else "note",
+        species=view.name,
+        rungs=case.single_reference,
+        headline=f"{view.name} has a small Hartree-Fock gap of {gap:.1f} eV.",
+        consequence=(
+            "An empty orbital lies below a filled one, so the state that was computed is probably not the ground state."
+            if gap < 0
+            else "MP2 and (T) divide by such gaps and overshoot when they are small."
+        ),
+        evidence=(evidence_of("homo_lumo_gap", gap, limit),),
+    )
+
+
+RULES = (
+    Rule(
+        code="hf-saddle",
+        severity="stop",
+        stage="after",
+        reads=("stable",),
+        source=ARITHMETIC,
+        judge=each(_saddle),
+        quiet=(measured(stable=True), measured()),
+        loud=(measured(stable=False),),
+    ),
+    Rule(
+        code="hf-followed",
+        severity="note",
+        stage="after",
+        reads=("notes of HF",),
+        source=ARITHMETIC,
+        judge=each(_followed),
+        quiet=(Example(molecules={"n2": Molecule(energies={"HF": -108.9}, notes=("20 iterations",))}),),
+        loud=(
+            Example(
+                molecules={
+                    "n2": Molecule(energies={"HF": -108.9}, notes=("followed an instability 0.7 kJ/mol down",))
+                }
+            ),
+        ),
+    ),
+    Rule(
+        code="hf-unstable-external",
+        severity="care",
+        stage="after",
+        reads=("instability_depth", "uhf_fractional"),
+        source=THRESHOLDS["instability_depth_care"].source,
+        judge=each(_unstable),
+        quiet=(measured(instability_depth=0.0), measured(instability_depth=9e-6), measured()),
+        loud=(measured(instability_depth=0.0036), measured(instability_depth=0.1, uhf_fractional=1.0)),
+    ),
+    Rule(
+        code="gap-small",
+        severity="care",
+        stage="after",
+        reads=("homo_lumo_gap",),
+        source=THRESHOLDS["gap_small"].source,
+        judge=each(_gap),
+        quiet=(measured(homo_lumo_gap=12.0), measured()),
+        loud=(measured(homo_lumo_gap=3.1), measured(homo_lumo_gap=-0.5)),
+    ),
+)

@@ -1,0 +1,117 @@
+"""What the number is, and whether its bar fits what was asked for."""
+
+from collections.abc import Iterator, Mapping
+from typing import Any
+
+from plumbrule_core.documents.findings import Evidence, Finding, Remedy
+from plumbrule_core.documents.questions import EnergyQuestion
+from plumbrule_core.judgement.case import Case, Standing
+from plumbrule_core.judgement.rules.base import Rule
+from plumbrule_core.judgement.rules.example import Example, Molecule
+from plumbrule_core.judgement.rules.remedies import add_rungs, advice, change, larger_basis
+from plumbrule_core.judgement.wording import in_unit
+
+SCALES = "size of zero-point energies in reactions and bonds: 3 to 30 kcal/mol for ordinary molecules (from memory)"
+
+
+def _too_wide(case: Case) -> Iterator[Finding]:
+    standing, question = case.standing, case.question
+    if standing is None or question is None or standing.uncertainty is None or standing.uncertainty <= question.within:
+        return
+    yield Finding(
+        code="bar-exceeds-target",
+        severity="care",
+        headline=f"The bar of ±{in_unit(standing.uncertainty, case.unit)} is wider than the {question.within:g} "
+        f"{case.unit} that are needed.",
+        consequence="A value that happens to agree with experiment proves nothing at this width. "
+        f"The largest cause is {standing.largest_cause}.",
+        evidence=(
+            Evidence(
+                reading="uncertainty", value=standing.uncertainty, threshold=question.within, unit=case.unit
+            ),
+        ),
+        remedies=_narrower(case, standing),
+    )
+
+
+def _narrower(case: Case, standing: Standing) -> tuple[Remedy, ...]:
+    first = {
+        "basis set": larger_basis(case),
+        "beyond the top rung": add_rungs(case, ("CCSD", "CCSD(T)"), "Add CCSD(T) and run"),
+        "geometry": (advice("Give geometries that were optimised with a correlated method and say so"),),
+    }.get(standing.largest_cause, ())
+    settle = round(standing.uncertainty or 0.0, 1)
+    return (*first, change(f"Settle for {settle:g} {case.unit}", "question.within", settle))
+
+
+def _total(case: Case) -> Iterator[Finding]:
+    if case.standing is None or not isinstance(case.question, EnergyQuestion):
+        return
+    yield Finding(
+        code="total-energy",
+        severity="note",
+        species=case.species[0].name if case.species else "",
+        headline="A total energy has no useful bar.",
+        consequence="It lies far above the exact energy in every basis set; most of that cancels in differences at one "
+        "recipe. Ask for a reaction, a bond or a gap to get a bar.",
+    )
+
+
+def _electronic(case: Case) -> Iterator[Finding]:
+    if case.question is None or isinstance(case.question, EnergyQuestion):
+        return
+    yield Finding(
+        code="electronic-energy",
+        severity="note",
+        headline="This is an electronic energy (Dₑ), without zero-point energy and heat.",
+        consequence="Do not compare it with a measured enthalpy or D₀ before zero-point energy is added: that is "
+        "3 to 30 kcal/mol (13 to 130 kJ/mol), never negligible, and not part of the bar.",
+        evidence=(Evidence(reading="zero-point energy", value="not included", source=SCALES),),
+        remedies=(advice("Take the zero-point energy from measured or computed vibrations and add it"),),
+    )
+
+
+_BOND: Mapping[str, Any] = {"kind": "bond", "species": "n2", "fragments": ["n", "n"]}
+_BOTH = {"n2": Molecule(), "n": Molecule(xyz="N 0 0 0", multiplicity=4)}
+
+
+def _barred(uncertainty: float | None, question: Mapping[str, Any] = _BOND) -> Example:
+    return Example(
+        molecules=_BOTH,
+        question=question,
+        standing=Standing("CCSD(T)", 940.0, uncertainty, "basis set"),
+    )
+
+
+RULES = (
+    Rule(
+        code="bar-exceeds-target",
+        severity="care",
+        stage="answer",
+        reads=("uncertainty",),
+        source="arithmetic",
+        judge=_too_wide,
+        quiet=(_barred(3.0), _barred(None), Example()),
+        loud=(_barred(17.0),),
+    ),
+    Rule(
+        code="total-energy",
+        severity="note",
+        stage="answer",
+        reads=("the kind of question",),
+        source="arithmetic",
+        judge=_total,
+        quiet=(_barred(3.0),),
+        loud=(_barred(None, {}),),
+    ),
+    Rule(
+        code="electronic-energy",
+        severity="note",
+        stage="after",
+        reads=("the kind of question",),
+        source=SCALES,
+        judge=_electronic,
+        quiet=(Example(),),
+        loud=(_barred(None),),
+    ),
+)

@@ -1,0 +1,123 @@
+"""How far the number can be trusted: the worst finding that applies to the rung the answer stands on."""
+
+from collections.abc import Iterable, Sequence
+
+from plumbrule_core.documents.findings import SEVERITIES, Answer, Finding, Level, Severity, Verdict
+from plumbrule_core.judgement.answer import LadderValue
+from plumbrule_core.judgement.case import Case, SpeciesView
+from plumbrule_core.judgement.wording import in_unit
+from plumbrule_core.rungs import RUNGS
+
+LEVELS: dict[Severity, Level] = {"note": "sound", "care": "take care", "stop": "do not rely on it"}
+
+
+def applies(finding: Finding, rung: str) -> bool:
+    """Whether a finding speaks of a rung, or of the whole answer."""
+    return not finding.rungs or rung in finding.rungs
+
+
+def stopped(findings: Iterable[Finding], rung: str) -> bool:
+    """Whether a finding says that the number of this rung is not to be used."""
+    return any(one.severity == "stop" and applies(one, rung) for one in findings)
+
+
+def best_of(values: Sequence[LadderValue], findings: Sequence[Finding]) -> LadderValue | None:
+    """The rung the answer stands on: the highest of the ladder that is not stopped.
+
+    Functionals only where there is no wave function. Where all are stopped, the highest is shown all the same.
+    """
+    ranked = sorted(values, key=lambda v: (RUNGS[v.rung].kind == "wave function", RUNGS[v.rung].rank), reverse=True)
+    kinds = {RUNGS[value.rung].kind for value in ranked}
+    if "wave function" in kinds:
+        ranked = [value for value in ranked if RUNGS[value.rung].kind == "wave function"]
+    standing = [value for value in ranked if not stopped(findings, value.rung)]
+    return next(iter(standing or ranked), None)
+
+
+def ordered(findings: Iterable[Finding]) -> tuple[Finding, ...]:
+    """The worst first; the order of the rules within one severity."""
+    return tuple(sorted(findings, key=lambda one: -SEVERITIES.index(one.severity)))
+
+
+def worst(findings: Iterable[Finding]) -> Severity:
+    """The worst severity; a note where there is none."""
+    return max((one.severity for one in findings), key=SEVERITIES.index, default="note")
+
+
+def overall(case: Case, best: LadderValue | None, answer: Answer | None, findings: Sequence[Finding]) -> Verdict:
+    """The verdict on the answer; findings are ordered, the worst first."""
+    if best is None or answer is None:
+        return _without_answer(case, findings)
+    touching = [one for one in findings if applies(one, best.rung)]
+    telling = [one for one in touching if one.severity != "note"]
+    severity = _with_lost_rungs(case, best, findings, worst(touching))
+    reasons = tuple(dict.fromkeys(one.headline for one in telling))
+    if severity == "note":
+        return _calm(case, answer)
+    headline = reasons[0] if reasons else f"A rung above {best.rung} is not to be used."
+    return Verdict(level=LEVELS[severity], headline=_led(severity, headline), reasons=reasons or (headline,))
+
+
+def _with_lost_rungs(case: Case, best: LadderValue, findings: Sequence[Finding], severity: Severity) -> Severity:
+    """An answer that had to step down from a stopped rung is at least to be taken with care."""
+    above = [n for n in case.wave_functions if RUNGS[n].rank > RUNGS[best.rung].rank and stopped(findings, n)]
+    return "care" if above and severity == "note" else severity
+
+
+def _led(severity: Severity, headline: str) -> str:
+    lead = {"care": "Take care", "stop": "Do not rely on it"}[severity]
+    return f"{lead}: {headline[0].lower() if headline.split(' ')[0] in _PLAIN else headline[0]}{headline[1:]}"
+
+
+_PLAIN = {"One", "The", "An", "A", "All"}
+"""First words of headlines that lose their capital inside a sentence."""
+
+
+def _calm(case: Case, answer: Answer) -> Verdict:
+    fine = "one determinant describes every molecule"
+    if len(case.species) == 1:
+        fine = f"one determinant describes {case.species[0].name}"
+    if case.pending:
+        return Verdict(level="unknown", headline=f"So far nothing speaks against it; {_left(case)}.")
+    if answer.uncertainty is None:
+        return Verdict(level="sound", headline=f"Sound: {fine}.", reasons=(_capital(fine) + ".",))
+    bar = f"the bar of ±{in_unit(answer.uncertainty, answer.unit)} holds what is known to be left out"
+    return Verdict(level="sound", headline=f"Sound: {fine}, and {bar}.", reasons=(_capital(fine) + ".",))
+
+
+def _capital(words: str) -> str:
+    return words[0].upper() + words[1:]
+
+
+def _left(case: Case) -> str:
+    many = case.pending
+    return f"{many} of {len(case.plan.tasks)} tasks {'has' if many == 1 else 'have'} no result yet"
+
+
+def _without_answer(case: Case, findings: Sequence[Finding]) -> Verdict:
+    hopeless = [one for one in findings if one.severity == "stop" and _covers(case, one)]
+    if hopeless:
+        reasons = tuple(dict.fromkeys(one.headline for one in hopeless))
+        return Verdict(level="do not rely on it", headline=_led("stop", reasons[0]), reasons=reasons)
+    if not case.results:
+        return Verdict(level="unknown", headline="Nothing is known yet.")
+    return Verdict(level="unknown", headline=f"There is no answer yet; {_left(case)}.")
+
+
+def _covers(case: Case, finding: Finding) -> bool:
+    return not finding.rungs or set(case.wave_functions or case.rungs) <= set(finding.rungs)
+
+
+def of_species(case: Case, view: SpeciesView, rung: str | None, findings: Sequence[Finding]) -> Verdict:
+    """The verdict on one species: what is said of it, for the rung the answer stands on."""
+    if not view.results:
+        return Verdict(level="unknown", headline="Nothing is known yet.")
+    own = [one for one in findings if one.species == view.name and (rung is None or applies(one, rung))]
+    severity = worst(own)
+    reasons = tuple(dict.fromkeys(one.headline for one in own if one.severity != "note"))
+    if severity != "note":
+        return Verdict(level=LEVELS[severity], headline=_led(severity, reasons[0]), reasons=reasons)
+    if any(task.id not in case.results for task in case.plan.tasks if task.spec.species.content == view.species.content):
+        return Verdict(level="unknown", headline="So far nothing speaks against it.")
+    calm = f"One determinant describes {view.name}."
+    return Verdict(level="sound", headline=f"Sound: {calm[0].lower()}{calm[1:]}", reasons=(calm,))

@@ -49,7 +49,8 @@ def value_words(value: ReadingValue | str, unit: str = "") -> str:
         return f"{value:.4g}".replace("-", MINUS) + behind
     telling = [one for one in value if 0.02 < one < 1.98] or list(value)
     shown = ", ".join(f"{one:.2f}" for one in telling[:6])
-    return f"{shown}{' \u2026' if len(telling) > 6 else ''}{behind}"
+    more = " \u2026" if len(telling) > 6 else ""
+    return f"{shown}{more}{behind}"
 
 
 def readings_table(judgement: Judgement) -> Numbers:

@@ -66,7 +66,9 @@ def _branch(tasks: list[Task], state: RunState, watch: Stopwatch, now: float) ->
     done = sum(one.state in ANSWERED for _, one in seen)
     spec = tasks[0].spec
     weight = sum(task.forecast.seconds for task in tasks) or 1.0
-    fraction = sum(task.forecast.seconds * row.fraction for task, row in zip(tasks, rows, strict=True)) / weight
+    fraction = (
+        sum(task.forecast.seconds * row.fraction for task, row in zip(tasks, rows, strict=True)) / weight
+    )
     name = f"{spec.species.name} \u00b7 {spec.settings.basis}"
     words = f"{done} of {len(tasks)} done"
     time = duration(sum(task.forecast.seconds for task in tasks))

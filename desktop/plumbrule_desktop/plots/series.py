@@ -61,7 +61,9 @@ class Convergence:
         for curve in (self.change, self.residual):
             if len(curve.y):
                 goal = f", goal {10**curve.goal:.0e}" if curve.goal is not None else ""
-                parts.append(f"{curve.name.lower()} {10 ** float(curve.y[-1]):.1e} {curve.unit}{goal}".strip())
+                parts.append(
+                    f"{curve.name.lower()} {10 ** float(curve.y[-1]):.1e} {curve.unit}{goal}".strip()
+                )
         return "; ".join(parts) + "."
 
     def numbers(self) -> Numbers:
@@ -138,7 +140,10 @@ class Comparison:
         """The picture in one sentence."""
         if not self.points:
             return "No rung has an answer yet."
-        return "; ".join(f"{_named(point)} {energy(point.value, self.unit, point.bar)}" for point in self.points) + "."
+        return (
+            "; ".join(f"{_named(point)} {energy(point.value, self.unit, point.bar)}" for point in self.points)
+            + "."
+        )
 
     def numbers(self) -> Numbers:
         """One row for each rung."""

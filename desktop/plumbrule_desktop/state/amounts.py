@@ -1,8 +1,8 @@
-"""Energies as people read them: with the places that fit the unit, a true minus sign and the unit behind."""
+"""Energies as they are shown: with a true minus sign and the unit behind."""
 
 from plumbrule_core.units import EnergyUnit
+from plumbrule_desktop.state import wording
 
-PLACES: dict[EnergyUnit, int] = {"kJ/mol": 1, "kcal/mol": 2, "eV": 3, "cm-1": 0, "hartree": 6}
 MINUS = "\u2212"
 
 
@@ -11,9 +11,9 @@ def unit_words(unit: str) -> str:
     return unit.replace("cm-1", "cm\u207b\u00b9")
 
 
-def number(value: float, unit: EnergyUnit) -> str:
+def number(value: float, unit: EnergyUnit, bar: float | None = None) -> str:
     """A value without its unit, as `−40.4`; a value that rounds to nothing has no sign."""
-    text = f"{value:.{PLACES[unit]}f}"
+    text = wording.number(value, unit, bar)
     if not text.strip("-0."):
         text = text.removeprefix("-")
     return text.replace("-", MINUS)
@@ -21,8 +21,8 @@ def number(value: float, unit: EnergyUnit) -> str:
 
 def energy(value: float, unit: EnergyUnit, bar: float | None = None) -> str:
     """`−40.4 ± 6.3 kJ/mol`."""
-    spread = f" \u00b1 {number(bar, unit)}" if bar is not None else ""
-    return f"{number(value, unit)}{spread} {unit_words(unit)}"
+    spread = f" \u00b1 {number(bar, unit, bar)}" if bar is not None else ""
+    return f"{number(value, unit, bar)}{spread} {unit_words(unit)}"
 
 
 def signed(value: float, unit: EnergyUnit) -> str:

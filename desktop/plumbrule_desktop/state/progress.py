@@ -88,7 +88,9 @@ class Overall:
             parts.append(f"{self.troubled} not finished")
         if self.running and self.used is not None:
             parts.append(f"{duration(self.used)} so far")
-            parts.append("slipping: longer than the forecast's high end" if self.slipping else self._left_words)
+            parts.append(
+                "slipping: longer than the forecast's high end" if self.slipping else self._left_words
+            )
         elif self.used is not None and self.answered == self.tasks:
             parts.append(f"took {duration(self.used)}")
         return ", ".join(parts)
@@ -128,6 +130,8 @@ def _left(task: Task, state: TaskState, used: float | None) -> float:
 
 
 def _pace(taken: list[tuple[Task, TaskState, float | None]]) -> float:
-    done = [(task.forecast.seconds, used) for task, one, used in taken if one.state == "done" and used is not None]
+    done = [
+        (task.forecast.seconds, used) for task, one, used in taken if one.state == "done" and used is not None
+    ]
     forecast, real = sum(pair[0] for pair in done), sum(pair[1] for pair in done)
     return min(max(real / forecast, 0.2), 5.0) if forecast > 1.0 else 1.0

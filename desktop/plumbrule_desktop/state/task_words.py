@@ -30,8 +30,8 @@ def trouble_words(task: TaskState) -> str:
             return f"The worker process ended without a word: {_sentence(task.reason)} {_carry_on(task)}"
         case "failed":
             return (
-                f"This task failed: {_sentence(task.reason)} Change the recipe or the molecule on the Build page, "
-                "or press Run to try again."
+                f"This task failed: {_sentence(task.reason)} Change the recipe or the molecule on the Build "
+                "page, or press Run to try again."
             )
         case _:
             return ""

@@ -2,6 +2,7 @@
 
 import contextlib
 import os
+import re
 import shutil
 from collections.abc import Iterable, Iterator
 from pathlib import Path
@@ -56,8 +57,8 @@ def prune(
             with contextlib.suppress(OSError):
                 path.unlink()
     for folder in shelf_folder(cache).glob(f"{SCRATCH}*"):
-        owner = folder.name.removeprefix(SCRATCH).partition("-")[0]
-        if owner.isdecimal() and not psutil.pid_exists(int(owner)):
+        owner = re.match(rf"{SCRATCH}(\d{{1,9}})-", folder.name)
+        if owner and not psutil.pid_exists(int(owner[1])):
             shutil.rmtree(folder, ignore_errors=True)
 
 

@@ -58,12 +58,14 @@ def _kept(file: Path) -> Calibration | None:
 
 
 def _measured(folder: Path) -> Calibration:
+    start = _start_seconds()
     measured = Calibration(
         computer=_computer(),
         seconds_per_gigaflop=seconds_per_gigaflop(),
-        start_seconds=_start_seconds(),
+        start_seconds=start or Machine.model_fields["start_seconds"].default,
     )
-    write_whole(folder / "machine.json", lambda file: file.write(measured.to_json().encode()))
+    if start is not None:
+        write_whole(folder / "machine.json", lambda file: file.write(measured.to_json().encode()))
     return measured
 
 
@@ -87,12 +89,12 @@ def seconds_per_gigaflop() -> float:
     return best / (2 * MATRIX**3 / 1e9)
 
 
-def _start_seconds() -> float:
-    """Seconds until a worker has loaded the library and ended again."""
+def _start_seconds() -> float | None:
+    """Seconds until a worker has loaded the library and ended again; None where it could not start."""
     begun = time.perf_counter()
     with tempfile.TemporaryDirectory() as folder:
         handle = LocalExecutor().submit(Order(shelf=folder, blobs=folder), lambda event: None)
         if not handle.wait(START_PATIENCE):
             handle.ask("kill")
             handle.wait()
-    return time.perf_counter() - begun
+    return time.perf_counter() - begun if handle.ending == "done" else None

@@ -19,8 +19,8 @@ from plumbrule_core.engine.speaking import Silent, Speaker, Teller
 from plumbrule_core.errors import PlumbruleError, Stopped
 from plumbrule_core.rungs.protocol import Bench, Given, Outcome, Rung, Tell
 
-Take = Callable[[Rung, Bench, TaskSpec], Iterable[Reading]]
-"""Takes every reading that a rung yields, right after it was computed."""
+Take = Callable[[str, Bench, TaskSpec], Iterable[Reading]]
+"""Takes every reading that a rung yields, by its name, right after it was computed."""
 
 
 class Chain:
@@ -144,7 +144,7 @@ class Chain:
     def _readings(self, task: Task) -> tuple[tuple[Reading, ...], tuple[str, ...]]:
         """The readings, or a note why there are none: a reading that breaks must not cost the energy."""
         try:
-            readings = tuple(self._take(self._rungs[task.spec.rung], self._bench, task.spec))
+            readings = tuple(self._take(task.spec.rung, self._bench, task.spec))
             for reading in readings:
                 self._speaker.say(Measured, task=task.id, reading=reading)
         except Exception as error:

@@ -44,6 +44,7 @@ class Hearing:
         self._seq = 0
         self._greeted = False
         self._refused = False
+        self._stopped = False
         self._over = False
         self._complaints = 0
 
@@ -80,8 +81,8 @@ class Hearing:
         self._over = True
         if self._refused:
             return "failed"
-        if not self._open:
-            return "done"
+        if self._greeted and not self._open:
+            return "stopped" if self._stopped else "done"
         if asked:
             if self._running:
                 self._pass(TaskStopped(seq=0, task=self._running))
@@ -109,6 +110,7 @@ class Hearing:
         if isinstance(event, Finished | Failed | TaskStopped):
             self._open.remove(event.task)
             self._running = "" if self._running == event.task else self._running
+            self._stopped = self._stopped or isinstance(event, TaskStopped)
         self._pass(event)
 
     def _pass(self, event: Event) -> None:

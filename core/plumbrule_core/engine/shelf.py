@@ -1,6 +1,7 @@
 """Checkpoints on disk: per task one archive of plain arrays, replaced as a whole, never a pickle."""
 
 import zipfile
+import zlib
 from collections.abc import Callable, Mapping
 from datetime import datetime
 from pathlib import Path
@@ -39,18 +40,28 @@ class FolderShelf:
     def load(self) -> Mapping[str, np.ndarray] | None:
         """The last checkpoint, or None where there is none that can be read."""
         try:
-            with np.load(self.path, allow_pickle=False) as archive:
-                arrays = {name: archive[name] for name in archive.files}
+            return _read_archive(self.path)
         except FileNotFoundError:
             return None
-        except (OSError, ValueError, EOFError, zipfile.BadZipFile, NotImplementedError) as error:
+        except _UNREADABLE as error:
             self._say(f"the checkpoint {self.path} cannot be read ({error}): starting afresh")
             return None
-        return arrays
 
     def save(self, arrays: Mapping[str, np.ndarray]) -> None:
         """Write beside and rename; raises OSError for a full disk, ValueError for arrays of objects."""
         write_whole(self.path, lambda file: _write_archive(file, arrays))
+
+
+_UNREADABLE = (OSError, ValueError, EOFError, RuntimeError, zipfile.BadZipFile, zlib.error)
+
+
+def _read_archive(path: Path) -> Mapping[str, np.ndarray]:
+    arrays = {}
+    with zipfile.ZipFile(path) as archive:
+        for name in archive.namelist():
+            with archive.open(name) as member:
+                arrays[name.removesuffix(".npy")] = np.lib.format.read_array(member, allow_pickle=False)
+    return arrays
 
 
 def _write_archive(file: BinaryIO, arrays: Mapping[str, np.ndarray]) -> None:

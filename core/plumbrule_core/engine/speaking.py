@@ -80,7 +80,6 @@ class Teller:
 
     def iteration(self, n: int, energy: float, residual: float | None = None, stage: str = "") -> None:
         """One iteration; raises PlumbruleError where the numbers ceased to be numbers, or Stopped."""
-        self._go_on()
         if not (math.isfinite(energy) and math.isfinite(residual or 0.0)):
             raise PlumbruleError(
                 f"in iteration {n} the energy or the residual is no longer a number: the iteration "
@@ -90,6 +89,7 @@ class Teller:
         self._held = {"n": int(n), "energy": float(energy), "residual": residual, "stage": stage}
         if self._iterations.spend():
             self._let_go()
+        self._go_on()
 
     def progress(self, fraction: float, what: str = "") -> None:
         """How far a task without iterations has come, 0 to 1; raises Stopped."""

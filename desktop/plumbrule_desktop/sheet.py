@@ -47,6 +47,25 @@ QToolButton[role="quiet"]:hover { background: $raised; color: $text; }
 QToolButton[role="quiet"]:focus { border: 1px solid $accent; padding: 2px; }
 QToolButton::menu-indicator { image: none; }
 
+QPushButton[role="clause"] {
+  background: transparent; color: $accent; border: none; border-bottom: 2px solid $accent; border-radius: 0;
+  padding: 1px 1px 0 1px; margin: 0; font-size: 17px; text-align: left;
+}
+QPushButton[role="clause"]:hover { background: $raised; }
+QPushButton[role="clause"]:focus { background: $raised; border-bottom: 3px solid $accent; padding: 1px 1px 0 1px; }
+QPushButton[role="clause"]:disabled { color: $unknown; border-bottom-color: $line; background: transparent; }
+QPushButton[role="clause"][faulty="true"] { color: $stop; border-bottom: 2px dashed $stop; }
+QLabel[role="sentence"] { font-size: 17px; padding: 1px 0 2px 0; }
+QFrame[role="popup"] { background: $surface; border: 1px solid $unknown; }
+QFrame[role="strip"] { background: $surface; border: none; border-bottom: 1px solid $line; }
+QFrame[role="segments"] { background: $raised; border: 1px solid $line; border-radius: 8px; }
+QToolButton[role="segment"] { background: transparent; color: $text; border: 1px solid transparent; border-radius: 6px;
+  padding: 4px 20px; }
+QToolButton[role="segment"]:hover { background: $window; }
+QToolButton[role="segment"]:checked { background: $surface; border: 1px solid $line; font-weight: 600; }
+QToolButton[role="segment"]:focus { border: 2px solid $accent; padding: 3px 19px; }
+QToolButton[role="segment"]:disabled { color: $unknown; }
+
 QLineEdit, QPlainTextEdit, QTextEdit, QSpinBox, QDoubleSpinBox, QComboBox {
   background: $surface; color: $text; border: 1px solid $line; border-radius: 6px; padding: 4px 7px;
   selection-background-color: $accent; selection-color: $on_accent;

@@ -91,6 +91,7 @@ class Desk(QObject):
         self._run: Any = None
         self._running_id: int | None = None
         self._starting = False
+        self._stop_asked = False
         self._events: list[Event] = []
         self._events_lock = threading.Lock()
         self._timer = QTimer(self, interval=TICK_MS)
@@ -233,7 +234,12 @@ class Desk(QObject):
             self._brief_id = first or None
             self._refresh(reset=True)
 
-        self._clerk.do(work, then, self._say)
+        def failed(error: Exception) -> None:
+            self._say(error)
+            if self._session is None:
+                self.new()
+
+        self._clerk.do(work, then, failed)
 
     # questions
 
@@ -246,6 +252,15 @@ class Desk(QObject):
     def add_brief(self, brief: Brief, says: str = "Add a question") -> None:
         """Add a question and choose it."""
         self._with_session(lambda session: session.add_brief(brief, says), self._chosen)
+
+    def add_question(self) -> None:
+        """Add an empty question and choose it."""
+        self.add_brief(Brief())
+
+    def duplicate(self) -> None:
+        """A copy of the chosen question."""
+        title = f"{title_of(self._brief)}, copy"[:200]
+        self.add_brief(self._brief.model_copy(update={"title": title}), "Copy the question")
 
     def remove_brief(self) -> None:
         """Take the chosen question out; an empty one takes the place of the last."""
@@ -358,7 +373,7 @@ class Desk(QObject):
         session, brief_id = self._session, self._brief_id
         if session is None or brief_id is None or self.running or self._refuse_read_only():
             return
-        self._starting, self._running_id = True, brief_id
+        self._starting, self._stop_asked, self._running_id = True, False, brief_id
         self.run_changed.emit(frozenset())
 
         def failed(error: Exception) -> None:
@@ -369,12 +384,15 @@ class Desk(QObject):
         self._clerk.do(lambda: session.run(brief_id, self._on_event), self._started, failed)
 
     def stop(self) -> None:
-        """Ask the run to stop; what was checkpointed stays."""
+        """Ask the run to stop; what was checkpointed stays. Never waits."""
+        self._stop_asked = True
         if self._run is not None:
             self._run.stop()
 
     def _started(self, run: Any) -> None:
         self._starting, self._run = False, run
+        if self._stop_asked:
+            run.stop()
         self._timer.start()
         self._reload_state(frozenset())
 
@@ -392,11 +410,27 @@ class Desk(QObject):
             if isinstance(event, Failed):
                 self.message.emit(event.reason, "error")
         if ended:
-            self._timer.stop()
-            self._run, self._running_id = None, None
-            self._reload_state(frozenset())
+            self._ended(self._run)
         if ended or any(isinstance(event, Finished) for event in events):
             self._rejudge()
+
+    def _ended(self, run: Any) -> None:
+        self._timer.stop()
+        self._run, self._running_id = None, None
+        self._reload_state(frozenset())
+        try:
+            run.wait(0)
+        except PlumbruleError as error:
+            self._say(error)
+            return
+        if run.outcome != "failed":
+            stopped = "Stopped. What was computed stays; Run carries on from there."
+            self.message.emit(stopped if run.outcome == "stopped" else "The run is done.", "note")
+
+    @property
+    def stopping(self) -> bool:
+        """Whether the run was asked to stop and has not ended yet."""
+        return self.running and self._stop_asked
 
     def _reload_state(self, moved: frozenset[str]) -> None:
         session, brief_id = self._session, self._brief_id
@@ -521,8 +555,7 @@ def _shelf(session: "Session", brief_id: int) -> tuple[Casebook, tuple[Entry, ..
         session.undo_label,
         session.redo_label,
     )
-    briefs = [(number, session.brief(number)) for number in _ids(session)]
-    entries = tuple(Entry(number, title_of(brief)) for number, brief in briefs)
+    entries = tuple(Entry(entry.id, title_of(entry.brief)) for entry in session.briefs())
     return file, entries, session.brief(brief_id)
 
 

@@ -1,0 +1,221 @@
+"""The question line: which question, its sentence with underlined controls, the forecast, and Run or Stop."""
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import (
+    QComboBox,
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QLineEdit,
+    QMenu,
+    QPushButton,
+    QToolButton,
+    QVBoxLayout,
+    QWidget,
+)
+
+from plumbrule_core.documents.brief import Brief
+from plumbrule_core.documents.findings import Edit
+from plumbrule_core.documents.questions import Clause
+from plumbrule_desktop.question_popups import popup_for
+from plumbrule_desktop.state.desk import Desk
+from plumbrule_desktop.state.wording import forecast_details, forecast_words
+from plumbrule_desktop.widgets.card import label
+from plumbrule_desktop.widgets.flow import FlowLayout
+from plumbrule_desktop.widgets.popup import Popup
+
+NO_MOLECULE = (Clause(text="Put a molecule in, then ask what you want to know."),)
+NO_QUESTION = (Clause(text="Ask: "), Clause(text="what do you want to know?", key="kind"))
+
+
+class Sentence(QWidget):
+    """The sentence; each clause with a key is a button that opens its editor."""
+
+    def __init__(self, desk: Desk, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._desk = desk
+        self._flow = FlowLayout(self, spacing=0, line_spacing=4)
+        self._shown: tuple[object, ...] = ()
+        self.clauses: dict[str, QPushButton] = {}
+        desk.brief_changed.connect(self.refresh)
+        desk.casebook_changed.connect(self.refresh)
+
+    def refresh(self) -> None:
+        """Show the sentence of the chosen question."""
+        clauses, read_only = _clauses(self._desk.brief), self._desk.casebook.read_only
+        wrong = frozenset(fault.where.removeprefix("question.").split(".")[0] for fault in self._desk.brief.faults())
+        if (clauses, read_only, wrong) == self._shown:
+            return
+        self._shown = (clauses, read_only, wrong)
+        focused = next((key for key, button in self.clauses.items() if button.hasFocus()), None)
+        self._clear()
+        for clause in clauses:
+            self._flow.addWidget(self._control(clause, read_only, wrong) if clause.key else _words(clause.text))
+        if focused in self.clauses:
+            self.clauses[focused].setFocus()
+        self.setAccessibleName("".join(clause.text for clause in clauses))
+
+    def _control(self, clause: Clause, read_only: bool, wrong: frozenset[str]) -> QPushButton:
+        button = QPushButton(clause.text.replace("&", "&&"), self)
+        button.setProperty("role", "clause")
+        button.setProperty("faulty", "true" if clause.key in wrong else "false")
+        button.setCursor(Qt.CursorShape.PointingHandCursor)
+        button.setAccessibleDescription("Press to change")
+        button.setEnabled(not read_only)
+        button.clicked.connect(lambda: self.open_editor(clause.key))
+        self.clauses[clause.key] = button
+        return button
+
+    def open_editor(self, key: str) -> Popup | None:
+        """Open the editor of one clause."""
+        popup = popup_for(key, self._desk, self)
+        if popup is not None:
+            popup.open_under(self.clauses.get(key, self))
+        return popup
+
+    def _clear(self) -> None:
+        self.clauses.clear()
+        while (item := self._flow.takeAt(0)) is not None:
+            widget = item.widget()
+            if widget is not None:
+                widget.hide()
+                widget.deleteLater()
+
+
+class Chooser(QWidget):
+    """Which of the casebook's questions is shown, with a menu to add, rename, copy and remove."""
+
+    def __init__(self, desk: Desk, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._desk = desk
+        self.list = QComboBox()
+        self.list.setAccessibleName("Question")
+        self.list.setToolTip("The questions of this casebook")
+        self.list.setFixedWidth(196)
+        self.list.activated.connect(lambda place: desk.choose(self.list.itemData(place)))
+        self.more = QToolButton(text="\u22ef")
+        self.more.setProperty("role", "button")
+        self.more.setAccessibleName("Add, rename, copy or remove a question")
+        self.more.setToolTip("Add, rename, copy or remove a question")
+        self.more.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(0, 0, 0, 0)
+        row.setSpacing(4)
+        row.addWidget(self.list)
+        row.addWidget(self.more)
+        desk.briefs_changed.connect(self.refresh)
+
+    def set_menu(self, menu: QMenu) -> None:
+        """The actions, from the one table of actions."""
+        self.more.setMenu(menu)
+
+    def refresh(self) -> None:
+        """Show the questions of the casebook."""
+        entries = self._desk.entries
+        self.list.clear()
+        for entry in entries:
+            self.list.addItem(entry.title, entry.id)
+            self.list.setItemData(self.list.count() - 1, entry.title, Qt.ItemDataRole.ToolTipRole)
+        ids = [entry.id for entry in entries]
+        if self._desk.brief_id in ids:
+            self.list.setCurrentIndex(ids.index(self._desk.brief_id))
+        self.list.setToolTip(self.list.currentText())
+
+    def rename(self) -> Popup:
+        """Ask for another title."""
+        popup = Popup("A title for this question", self)
+        field = QLineEdit(self._desk.brief.title)
+        field.setPlaceholderText("empty: the question itself")
+        field.setMaxLength(200)
+        field.setMinimumWidth(300)
+        field.setAccessibleName("Title")
+        popup.column.addWidget(field)
+
+        def take() -> None:
+            text = field.text().strip()
+            popup.close()
+            self._desk.edit((Edit(path="title", value=text),), "Rename the question")
+
+        popup.add_done().clicked.connect(take)
+        field.returnPressed.connect(take)
+        popup.open_under(self)
+        field.setFocus()
+        return popup
+
+
+class QuestionLine(QFrame):
+    """Chooser, sentence, forecast and the one primary button, above the pages."""
+
+    def __init__(self, desk: Desk, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.setProperty("role", "plain")
+        self._desk = desk
+        self.chooser = Chooser(desk)
+        self.sentence = Sentence(desk)
+        self.trouble = label("", "fault")
+        self.forecast = label("", "muted", wrap=False)
+        self.forecast.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
+        self.button = QPushButton("Run")
+        self.button.setProperty("role", "primary")
+        self.button.setMinimumWidth(104)
+        middle = QVBoxLayout()
+        middle.setSpacing(2)
+        middle.addStretch(1)
+        middle.addWidget(self.sentence)
+        middle.addWidget(self.trouble)
+        middle.addStretch(1)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(14, 9, 14, 9)
+        row.setSpacing(14)
+        row.addWidget(self.chooser)
+        row.addLayout(middle, 1)
+        row.addWidget(self.forecast)
+        row.addWidget(self.button)
+        self.button.clicked.connect(lambda: desk.stop() if desk.running else desk.run())
+        for signal in (desk.brief_changed, desk.plan_changed, desk.run_changed, desk.casebook_changed):
+            signal.connect(self.refresh)
+        self.sentence.refresh()
+        self.refresh()
+
+    def refresh(self) -> None:
+        """Show the forecast, what is wrong with the question, and what the button does now."""
+        desk = self._desk
+        plan, faults = desk.plan, desk.faults
+        asked = [fault.says for fault in faults if fault.where.startswith("question")]
+        shown = asked if desk.brief.question is not None else []
+        self.trouble.setText(shown[0][:1].upper() + shown[0][1:] + "." if shown else "")
+        self.trouble.setToolTip("\n".join(shown))
+        self.trouble.setVisible(bool(shown))
+        total = plan.forecast if plan and not faults else None
+        pending = plan is None and not faults
+        self.forecast.setText(forecast_words(total) if total else "counting\u2026" if pending else "")
+        self.forecast.setToolTip(forecast_details(total) if total else "")
+        self._dress_button()
+
+    @property
+    def can_run(self) -> bool:
+        """Whether Run would start something."""
+        desk = self._desk
+        ready = desk.plan is not None and not desk.faults and not desk.casebook.read_only
+        return ready and not desk.running
+
+    def _dress_button(self) -> None:
+        desk = self._desk
+        if desk.running:
+            self.button.setText("Stopping\u2026" if desk.stopping else "Stop")
+            self.button.setEnabled(not desk.stopping)
+            self.button.setToolTip("Stop; what was computed stays")
+            return
+        self.button.setText("Run")
+        self.button.setEnabled(self.can_run)
+        self.button.setToolTip("\n".join(str(fault.says) for fault in desk.faults) or "Run the plan")
+
+
+def _clauses(brief: Brief) -> tuple[Clause, ...]:
+    if not brief.species and brief.question is None:
+        return NO_MOLECULE
+    return brief.question.sentence(brief.by_name) if brief.question else NO_QUESTION
+
+
+def _words(text: str) -> QLabel:
+    return label(text, "sentence", wrap=False)

@@ -107,7 +107,7 @@ def _axis(scale: _Scale, y: float, unit: str) -> Iterator[str]:
     yield _label((LEFT + WIDTH - RIGHT) / 2, y + 36, unit, "middle")
 
 
-def ticks(low: float, high: float, about: int = 5) -> tuple[float, ...]:
+def ticks(low: float, high: float, about: int = 7) -> tuple[float, ...]:
     """Round values between two ends, about so many, in steps of 1, 2 or 5."""
     if not high > low:
         return (low,)

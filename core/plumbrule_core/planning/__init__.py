@@ -16,6 +16,8 @@ from plumbrule_core.planning.recipe_faults import recipe_faults
 from plumbrule_core.planning.sizes import size_of
 from plumbrule_core.rungs import RUNGS
 
+__all__ = ["closed", "make_plan", "needed_species", "recipe_faults", "versions", "versions_that_matter"]
+
 RUNGS_VERSION = 1
 """Raised whenever a rung's numbers change, so that stored results of older rungs are not reused."""
 

@@ -1,7 +1,9 @@
+import os
 import sqlite3
 import threading
+import tracemalloc
 import zlib
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from pathlib import Path
 
 import numpy as np
@@ -72,34 +74,50 @@ def test_an_array_is_named_by_its_bytes_and_kept_once(tmp_path: Path, npy: Npy) 
         assert book._opened.db.execute("SELECT count(*) FROM blobs").fetchone() == (1,)
 
 
-def test_pickled_objects_are_refused_as_arrays(tmp_path: Path) -> None:
-    np.save(tmp_path / "objects.npy", np.array([{"run": "me"}], dtype=object), allow_pickle=True)
-    with Casebook.open(None) as book:
-        with pytest.raises(CasebookError, match="not a plain array"):
-            book.put_array(tmp_path / "objects.npy")
-        with pytest.raises(CasebookError, match="not a plain array"):
-            book.put_array(b"cos\nsystem\n(S'true'\ntR.")
+class Trap:
+    """Makes a folder when it is unpickled."""
+
+    def __init__(self, folder: Path) -> None:
+        self.folder = folder
+
+    def __reduce__(self) -> tuple[object, ...]:
+        return (os.mkdir, (str(self.folder),))
 
 
-def test_pickled_objects_planted_in_the_file_are_refused_when_read(tmp_path: Path) -> None:
-    np.save(tmp_path / "objects.npy", np.array([{"run": "me"}], dtype=object), allow_pickle=True)
-    content = (tmp_path / "objects.npy").read_bytes()
+@pytest.fixture
+def pickled(tmp_path: Path) -> Iterator[bytes]:
+    """An `.npy` file of objects that would run code when loaded, and did not by the end of the test."""
+    np.save(tmp_path / "objects.npy", np.array([Trap(tmp_path / "sprung")], dtype=object), allow_pickle=True)
+    yield (tmp_path / "objects.npy").read_bytes()
+    assert not (tmp_path / "sprung").exists()
+
+
+def test_pickled_objects_are_refused_as_arrays(pickled: bytes) -> None:
     with Casebook.open(None) as book:
-        book._opened.db.execute(
-            "INSERT INTO blobs (name, packed) VALUES (?, ?)", (name_of(content), zlib.compress(content))
-        )
+        for content in (pickled, pickled[pickled.index(b"\n") + 1 :]):
+            with pytest.raises(CasebookError, match="not a plain array"):
+                book.put_array(content)
+
+
+def test_pickled_objects_planted_in_the_file_are_refused_when_read(pickled: bytes) -> None:
+    with Casebook.open(None) as book:
+        row = (name_of(pickled), zlib.compress(pickled))
+        book._opened.db.execute("INSERT INTO blobs (name, packed) VALUES (?, ?)", row)
         with pytest.raises(CasebookError, match="not a plain array"):
-            book.array(ArrayRef(blob=name_of(content), shape=(1,), dtype="object"))
+            book.array(ArrayRef(blob=name_of(pickled), shape=(1,), dtype="object"))
 
 
 def test_a_small_blob_that_swells_without_end_is_refused_without_filling_the_memory(npy: Npy) -> None:
     bomb = npy(np.zeros(20_000_000))
     with Casebook.open(None) as book:
-        book._opened.db.execute(
-            "INSERT INTO blobs (name, packed) VALUES (?, ?)", (name_of(bomb), zlib.compress(bomb))
-        )
+        row = (name_of(bomb), zlib.compress(bomb))
+        book._opened.db.execute("INSERT INTO blobs (name, packed) VALUES (?, ?)", row)
+        tracemalloc.start()
         with pytest.raises(CasebookError, match="damaged"):
             book.array(ArrayRef(blob=name_of(bomb), shape=(2,), dtype="float64"))
+        peak = tracemalloc.get_traced_memory()[1]
+        tracemalloc.stop()
+        assert peak < 5_000_000
 
 
 @pytest.mark.parametrize("shape", [(3,), (2, 1), (-1,), (10**30,)])

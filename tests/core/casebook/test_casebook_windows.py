@@ -9,8 +9,8 @@ from pathlib import Path
 
 import pytest
 
-from plumbrule_core.casebook import Casebook, connection
-from plumbrule_core.casebook.lock import WriterLock
+from plumbrule_core.casebook import Casebook, connection, lock
+from plumbrule_core.casebook.lock import NoLock, WriterLock
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.results import Result
 from plumbrule_core.errors import CasebookError
@@ -102,13 +102,33 @@ def test_another_process_that_holds_the_casebook_makes_this_one_read_only(closed
 
 
 def test_a_new_casebook_is_not_made_while_another_window_makes_it(tmp_path: Path) -> None:
-    lock = WriterLock.take(tmp_path / "a.plumb")
+    held = WriterLock.take(tmp_path / "a.plumb")
     with pytest.raises(CasebookError, match="Another window"):
         Casebook.open(tmp_path / "a.plumb")
-    lock.release()
-    lock.release()
+    held.release()
+    held.release()
     Casebook.open(tmp_path / "a.plumb").close()
     assert _names(tmp_path) == {"a.plumb"}
+
+
+def test_a_lock_on_a_file_that_its_last_holder_removed_meanwhile_is_taken_anew(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    held, removed = lock._held, []
+
+    def removed_at_first(beside: Path) -> int:
+        handle = held(beside)
+        if not removed:
+            removed.append(beside)
+            beside.unlink()
+        return handle
+
+    monkeypatch.setattr(lock, "_held", removed_at_first)
+    first = WriterLock.take(tmp_path / "a.plumb")
+    assert removed
+    with pytest.raises(NoLock):
+        WriterLock.take(tmp_path / "a.plumb")
+    first.release()
 
 
 def _hold_a_reading(path: Path) -> sqlite3.Connection:

@@ -118,7 +118,7 @@ def _problems(here: Machine) -> Iterator[str]:
         if version == "not installed":
             yield f"{name} is not installed; `pip install plumbrule` brings it"
     if here.memory_mb < LITTLE_MEMORY_MB:
-        yield f"only {here.memory_mb:.0f} MB of memory can be used; 2 GB or more are needed for ordinary molecules"
+        yield f"only {here.memory_mb:.0f} MB of memory can be used; ordinary molecules need 2 GB or more"
     if here.disk_mb < LITTLE_DISK_MB:
         yield f"only {here.disk_mb:.0f} MB are free on the disk of {cache_folder()}; make room there"
     if not _writable(cache_folder()):
@@ -163,8 +163,8 @@ def _trial_text(trial: Trial) -> str:
     if trial.energy is None:
         return "trial calculation: no result"
     return (
-        f"trial calculation: H2 at 1.4 bohr, CCSD/STO-3G: {trial.energy:.6f} hartree in {trial.seconds:.1f} s; "
-        f"known {KNOWN_ENERGY} ({KNOWN_SOURCE})"
+        f"trial calculation: H2 at 1.4 bohr, CCSD/STO-3G: {trial.energy:.6f} hartree "
+        f"in {trial.seconds:.1f} s; known {KNOWN_ENERGY} ({KNOWN_SOURCE})"
     )
 
 

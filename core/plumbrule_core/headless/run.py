@@ -83,9 +83,8 @@ def _run(
     total = _sum(left)
     if total is not None:
         about, most = words.duration(total.seconds), words.duration(total.seconds_high)
-        say(
-            f"{len(left)} calculations: about {about}, up to {most}, {words.memory(total.memory_mb)} of memory"
-        )
+        memory = words.memory(total.memory_mb)
+        say(f"{len(left)} calculations: about {about}, up to {most}, {memory} of memory")
     with progress_for(plan) as progress, stop_on_signals() as stop:
         run = session.run(number, progress.heard, threads=threads, memory_mb=memory_mb)
         asked = False

@@ -1,7 +1,7 @@
 """One `[species.NAME]` table: where the atoms come from, charge and multiplicity."""
 
 import json
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import Annotated, Any
 
@@ -11,8 +11,9 @@ from plumbrule_core import geometry
 from plumbrule_core.documents.base import Document
 from plumbrule_core.documents.faults import Fault, faults_of
 from plumbrule_core.documents.ground_states import ground_multiplicity
-from plumbrule_core.documents.species import Species
+from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.errors import Refused, Unreadable
+from plumbrule_core.geometry import atom_lines, xyz
 
 SOURCES = ("geometry", "xyz", "smiles")
 
@@ -36,7 +37,8 @@ def read_species(name: str, data: Any, folder: Path) -> Species:
     try:
         read = _molecules(table, name, folder)
     except Unreadable as error:
-        raise _refused(f"{where}.{source}", str(error)) from None
+        lines = str(error).split("\n")
+        raise Refused(tuple(Fault(where=f"{where}.{source}", says=line) for line in lines)) from None
     if len(read) != 1:
         says = f"holds {len(read)} molecules; a species is one, so give each a file of its own"
         raise _refused(f"{where}.{source}", says)
@@ -65,30 +67,43 @@ def _source_faults(data: Mapping[str, Any], where: str) -> tuple[Fault, ...]:
 
 
 def _molecules(table: SpeciesTable, name: str, folder: Path) -> tuple[Species, ...]:
+    """What the source holds; where it states no multiplicity, the proposal fits the charge of the table."""
+
+    def propose(atoms: Sequence[Atom], charge: int) -> int:
+        return ground_multiplicity(atoms, charge if table.charge is None else table.charge)
+
     if table.geometry is not None:
-        return geometry.read_file(folder / table.geometry)
+        return geometry.read_file(folder / table.geometry, propose)
     if table.smiles is not None:
         return (geometry.from_smiles(table.smiles, name),)
-    return geometry.read_text(table.xyz or "", name)
+    lines = table.xyz or ""
+    if not (xyz.recognises(lines) or atom_lines.recognises(lines)):
+        raise Unreadable(
+            "holds no atom line; a line is an element and three places in angstrom: O 0.0 0.0 0.117"
+        )
+    return geometry.read_text(lines, name, propose)
 
 
 def _named(read: Species, name: str, table: SpeciesTable) -> Species:
     charge = read.charge if table.charge is None else table.charge
-    multiplicity = table.multiplicity
-    if multiplicity is None:
-        same = charge == read.charge
-        multiplicity = read.multiplicity if same else ground_multiplicity(read.atoms, charge)
+    multiplicity = read.multiplicity if table.multiplicity is None else table.multiplicity
     data = {
         **read.to_data(),
         "name": name,
         "charge": charge,
         "multiplicity": multiplicity,
-        "origin": read.origin if table.origin is None else table.origin,
+        "origin": _origin(read, table),
     }
     try:
         return Species.from_data(data)
     except ValidationError as error:
         raise Refused(faults_of(error, f"species.{name}")) from None
+
+
+def _origin(read: Species, table: SpeciesTable) -> str:
+    if table.origin is not None:
+        return table.origin
+    return "given in the question file" if table.xyz is not None else read.origin
 
 
 def _refused(where: str, says: str) -> Refused:

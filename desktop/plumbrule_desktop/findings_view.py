@@ -6,6 +6,7 @@ from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QHBoxLayout, QPushButton, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.findings import Evidence, Finding, Remedy, Severity
+from plumbrule_desktop.models.readings import reading_name
 from plumbrule_desktop.widgets.card import Card, label
 from plumbrule_desktop.widgets.flow import FlowLayout
 from plumbrule_desktop.widgets.mark import SeverityMark
@@ -97,4 +98,4 @@ def evidence_words(evidence: Evidence) -> str:
     unit = f" {evidence.unit}" if evidence.unit else ""
     limit = f"; the limit is {evidence.threshold:.3g}{unit}" if evidence.threshold is not None else ""
     source = f" ({evidence.source})" if evidence.source else ""
-    return f"{evidence.reading}: {value}{unit}{limit}{source}"
+    return f"{reading_name(evidence.reading)}: {value}{unit}{limit}{source}"

@@ -13,7 +13,8 @@ from plumbrule_desktop.state.task_words import state_words, trouble_words
 from plumbrule_desktop.state.wording import duration, memory
 
 Index = QModelIndex | QPersistentModelIndex
-HEADER = ("Task", "State", "Progress", "Time", "Memory")
+HEADER = ("Task", "State", "Progress", "Time / forecast", "Memory / forecast")
+UNKNOWN = "\u2013"
 TASK_ROLE = int(Qt.ItemDataRole.UserRole)
 """The task's identity, empty for a chain."""
 FRACTION_ROLE = TASK_ROLE + 1
@@ -71,11 +72,17 @@ def _branch(tasks: list[Task], state: RunState, watch: Stopwatch, now: float) ->
     )
     name = f"{spec.species.name} \u00b7 {spec.settings.basis}"
     words = f"{done} of {len(tasks)} done"
-    time = duration(sum(task.forecast.seconds for task in tasks))
+    time = _short(sum(task.forecast.seconds for task in tasks))
     peak = memory(max(task.forecast.memory_mb for task in tasks))
     head = Row(
         task="",
-        texts=(name, words, f"{fraction:.0%}", f"forecast {time}", f"forecast {peak}"),
+        texts=(
+            name,
+            words,
+            f"{fraction:.0%}",
+            f"{_sum_used(seen, watch, now)} / {time}",
+            f"{UNKNOWN} / {peak}",
+        ),
         state=_branch_state([one for _, one in seen]),
         fraction=fraction,
         tip=f"{spec.species.name}, {spec.species.formula}, {spec.settings.basis}",
@@ -109,17 +116,23 @@ def _row(task: Task, state: TaskState, used: float | None) -> Row:
 
 
 def _time(task: Task, state: TaskState, used: float | None) -> str:
-    forecast = duration(task.forecast.seconds)
-    if state.state == "waiting" or used is None:
-        return f"forecast {forecast}"
-    return f"{duration(used)} of {forecast}"
+    known = state.state != "waiting" and used is not None
+    return f"{_short(used) if known and used is not None else UNKNOWN} / {_short(task.forecast.seconds)}"
 
 
 def _memory(task: Task, state: TaskState) -> str:
-    forecast = memory(task.forecast.memory_mb)
-    if state.result is None:
-        return f"forecast {forecast}"
-    return f"{memory(state.result.memory_mb)} of {forecast}"
+    used = UNKNOWN if state.result is None else memory(state.result.memory_mb)
+    return f"{used} / {memory(task.forecast.memory_mb)}"
+
+
+def _sum_used(seen: list[tuple[Task, TaskState]], watch: Stopwatch, now: float) -> str:
+    times = [watch.used(one, now) for _, one in seen if one.state != "waiting"]
+    known = [time for time in times if time is not None]
+    return _short(sum(known)) if known else UNKNOWN
+
+
+def _short(seconds: float) -> str:
+    return "< 1 s" if seconds < 1 else duration(seconds)
 
 
 class TaskModel(QAbstractItemModel):

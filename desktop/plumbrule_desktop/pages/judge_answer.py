@@ -10,7 +10,7 @@ from plumbrule_desktop.look import colours
 from plumbrule_desktop.plots.ticks import step, tick_text, ticks
 from plumbrule_desktop.state.amounts import energy, unit_words
 from plumbrule_desktop.state.answer_text import can_be_relied_on, question_sentence, target_words, within
-from plumbrule_desktop.widgets.card import Card, label
+from plumbrule_desktop.widgets.card import Card, label, tint
 
 LEVEL_WORDS: dict[Level, str] = {
     "unknown": "Not known yet",
@@ -148,9 +148,8 @@ class AnswerCard(Card):
         self.partial.setVisible(bool(so_far))
         self._show_number(brief, judgement)
         verdict = judgement.verdict
-        c = colours(self)
         self.level.setText(LEVEL_WORDS[verdict.level])
-        self.level.setStyleSheet(f"color: {c.level(verdict.level)};")
+        tint(self.level, verdict.level)
         self.headline.setText(verdict.headline)
         self.headline.setVisible(bool(verdict.headline))
         self.reasons.setText("\n".join(f"\u2022 {reason}" for reason in verdict.reasons))
@@ -170,7 +169,7 @@ class AnswerCard(Card):
         font.setBold(good)
         font.setStrikeOut(not good)
         self.number.setFont(font)
-        self.number.setStyleSheet("" if good else f"color: {colours(self).unknown};")
+        tint(self.number, None if good else "unknown")
         spoken = (
             self.number.text() if good else f"{self.number.text()}, struck out: do not rely on this number"
         )

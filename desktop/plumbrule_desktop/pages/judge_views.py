@@ -5,7 +5,6 @@ from PySide6.QtWidgets import QFrame, QScrollArea, QTabWidget, QVBoxLayout, QWid
 
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Judgement, SpeciesJudgement
-from plumbrule_desktop.look import colours
 from plumbrule_desktop.models.grid import GridModel
 from plumbrule_desktop.models.readings import readings_table
 from plumbrule_desktop.pages.judge_answer import LEVEL_WORDS
@@ -15,7 +14,7 @@ from plumbrule_desktop.plots.panel import PlotPanel, numbers_table
 from plumbrule_desktop.plots.series import budget, comparison
 from plumbrule_desktop.state.amounts import MINUS
 from plumbrule_desktop.state.answer_text import within
-from plumbrule_desktop.widgets.card import Card, label
+from plumbrule_desktop.widgets.card import Card, label, tint
 
 
 class MethodsView(QWidget):
@@ -125,13 +124,12 @@ def _species_card(one: SpeciesJudgement) -> Card:
     verdict = one.verdict
     card.column.addWidget(label(f"{one.name} \u00b7 {one.formula}", "heading"))
     level = label(LEVEL_WORDS[verdict.level] + (f": {verdict.headline}" if verdict.headline else ""))
-    level.setStyleSheet(f"color: {colours(card).level(verdict.level)};")
+    tint(level, verdict.level)
     card.column.addWidget(level)
     if verdict.reasons:
         card.column.addWidget(label("\n".join(f"\u2022 {reason}" for reason in verdict.reasons)))
     energies = "\n".join(
-        f"{rung}: {value:.8f} hartree".replace("-", MINUS, 1) if value < 0 else f"{rung}: {value:.8f} hartree"
-        for rung, value in one.energies.items()
+        f"{rung}: {value:.8f} hartree".replace(": -", f": {MINUS}") for rung, value in one.energies.items()
     )
     if energies:
         card.column.addWidget(label(energies, "muted"))

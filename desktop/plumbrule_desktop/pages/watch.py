@@ -81,13 +81,15 @@ class WatchPage(QWidget):
         self.splitter.setChildrenCollapsible(False)
         self.splitter.addWidget(left)
         self.splitter.addWidget(self.task)
-        self.splitter.setStretchFactor(0, 5)
-        self.splitter.setStretchFactor(1, 6)
+        self.splitter.setSizes([600, 500])
+        self.splitter.setStretchFactor(0, 1)
+        self.splitter.setStretchFactor(1, 1)
         page = QVBoxLayout(self)
         page.setContentsMargins(16, 12, 16, 12)
         page.setSpacing(10)
         page.addWidget(head)
         page.addWidget(self.splitter, 1)
+        page.addStretch(0)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Side by side where there is room."""
@@ -130,6 +132,7 @@ class WatchPage(QWidget):
     def _show_head(self, plan: Plan | None, now: float) -> None:
         can_run = plan is not None and bool(plan.tasks) and not self._desk.faults
         self.bar.setVisible(can_run)
+        self.splitter.setVisible(can_run)
         if plan is None or not can_run:
             self.button.hide()
             self._say(*_no_plan(plan, tuple(str(fault) for fault in self._desk.faults)))
@@ -227,4 +230,4 @@ def _button(whole: Overall) -> str:
         return "Stop"
     if whole.answered == whole.tasks:
         return "See the judgement"
-    return "Carry on" if whole.answered or whole.troubled else "Run"
+    return "Run"

@@ -102,8 +102,8 @@ class TaskList(QTreeView):
         self.setMinimumWidth(260)
         header = self.header()
         header.setStretchLastSection(False)
-        header.setMinimumSectionSize(70)
-        for column, width in ((Column.TASK, 150), (Column.STATE, 130), (Column.PROGRESS, 120)):
+        header.setMinimumSectionSize(60)
+        for column, width in ((Column.TASK, 140), (Column.STATE, 122), (Column.PROGRESS, 104)):
             header.resizeSection(column, width)
         header.setSectionResizeMode(Column.TASK, QHeaderView.ResizeMode.Interactive)
         model.modelReset.connect(self.unfold)

@@ -34,6 +34,7 @@ class TaskView(Card):
         self._column.setContentsMargins(0, 6, 0, 0)
         self._no_trace = label("", "muted")
         self._column.addWidget(self._no_trace)
+        self._column.addStretch(0)
         self.log = QPlainTextEdit(readOnly=True)
         self.log.setAccessibleName("Log of the chosen task")
         self.log.setPlaceholderText("Nothing has been said yet.")
@@ -49,6 +50,7 @@ class TaskView(Card):
         for part in (self.title, self.state, self.trouble, self.cost):
             self.column.addWidget(part)
         self.column.addWidget(self._tabs, 1)
+        self.column.addStretch(0)
         self.clear()
 
     @property
@@ -105,7 +107,7 @@ class TaskView(Card):
         from plumbrule_desktop.plots.convergence import ConvergencePlot
 
         self._panel = PlotPanel("Convergence", ConvergencePlot())
-        self._column.addWidget(self._panel)
+        self._column.insertWidget(1, self._panel, 1)
         return self._panel
 
     def _show_log(self, lines: tuple[str, ...], before: tuple[str, ...] | None) -> None:

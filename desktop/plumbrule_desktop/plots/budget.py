@@ -11,11 +11,13 @@ from plumbrule_desktop.plots.rows import AXIS_HEIGHT, LEFT, RowPlot
 from plumbrule_desktop.plots.series import Budget, Numbers, shift_words
 from plumbrule_desktop.state.amounts import energy, signed, unit_words
 
-ROW = 58.0
+ROW = 62.0
 
 
 class BudgetPlot(RowPlot):
-    """One row a cause: name and size, the bar, how it was found."""
+    """One row a cause: name and size, the bar with the sum as a mark, how it was found."""
+
+    grid = False
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__("Budget of the uncertainty", ROW, parent)
@@ -55,8 +57,11 @@ class BudgetPlot(RowPlot):
         return low - (room if low < 0 else 0.0), high + room
 
     def axis_title(self) -> str:
-        """The scale in words."""
-        return f"contribution to the uncertainty, {unit_words(self._data.unit)}"
+        """The scale in words, with the sum."""
+        unit = self._data.unit
+        if self._data.total is None:
+            return f"contribution to the uncertainty, {unit_words(unit)}"
+        return f"{unit_words(unit)}; dashed: together {energy(self._data.total, unit, self._data.total)}"
 
     def lane(self) -> QRectF:
         """The whole width; names and sizes stand above each bar."""
@@ -71,11 +76,7 @@ class BudgetPlot(RowPlot):
         return convert(value, line.unit, self._data.unit)
 
     def draw_rows(self, painter: QPainter, c: Colours, lane: QRectF) -> None:
-        """Every cause, then the sum as a dashed line."""
-        if self._data.total is not None:
-            x = self.x_of(self._data.total, lane)
-            painter.setPen(QPen(QColor(c.accent), 1.5, Qt.PenStyle.DashLine))
-            painter.drawLine(QPointF(x, lane.top()), QPointF(x, lane.bottom()))
+        """Every cause."""
         for row, line in enumerate(self._data.lines):
             self._draw_row(painter, c, lane, self.top_of(row), line)
 
@@ -95,21 +96,26 @@ class BudgetPlot(RowPlot):
         )
         name = QRectF(head.left(), head.top(), head.width() - wide - 10, 18)
         _write(painter, c.text, name, line.cause, Qt.AlignmentFlag.AlignLeft)
-        self._draw_bar(painter, c, lane, top + 23, line)
+        self._draw_bar(painter, c, lane, top + 24, line)
         how = f"{line.how} ({line.source})" if line.source else line.how
         _write(
-            painter, c.muted, QRectF(lane.left(), top + 37, lane.width(), 17), how, Qt.AlignmentFlag.AlignLeft
+            painter, c.muted, QRectF(lane.left(), top + 41, lane.width(), 17), how, Qt.AlignmentFlag.AlignLeft
         )
 
     def _draw_bar(self, painter: QPainter, c: Colours, lane: QRectF, top: float, line: BudgetLine) -> None:
         zero, end = self.x_of(0.0, lane), self.x_of(self._in_unit(line, line.size), lane)
         painter.setPen(Qt.PenStyle.NoPen)
         painter.setBrush(QColor(c.accent))
-        painter.drawRoundedRect(QRectF(zero, top, max(end - zero, 2.0), 11), 3, 3)
+        painter.drawRoundedRect(QRectF(zero, top, max(end - zero, 2.0), 9), 3, 3)
+        if self._data.total is not None:
+            x = self.x_of(self._data.total, lane)
+            painter.setPen(QPen(QColor(c.text), 1.5, Qt.PenStyle.DashLine))
+            painter.drawLine(QPointF(x, top - 2), QPointF(x, top + 15))
         if line.shift is None:
             return
         tip = self.x_of(self._in_unit(line, line.shift), lane)
         ahead = 6.0 if tip >= zero else -6.0
+        top += 7.5
         painter.setPen(QPen(QColor(c.text), 1.6))
         painter.drawLine(QPointF(zero, top + 5.5), QPointF(tip, top + 5.5))
         painter.setBrush(QBrush(QColor(c.text)))

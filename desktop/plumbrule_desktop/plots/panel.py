@@ -21,6 +21,8 @@ from plumbrule_desktop.plots.pictures import FILTER, save_picture
 from plumbrule_desktop.plots.series import Numbers
 from plumbrule_desktop.widgets.card import label
 
+HINT = "Read off the numbers one by one with the arrow keys."
+
 
 class Plot(Protocol):
     """What a panel needs of its plot; the plot is a QWidget with a signal `detail(str)`."""
@@ -68,11 +70,10 @@ class PlotPanel(QWidget):
         self._save = QPushButton("Save picture\u2026")
         self._save.setToolTip("Save this picture as SVG or PNG")
         self._save.clicked.connect(self._ask_where)
-        self._detail = label("", "muted")
+        self._detail = label(HINT, "muted")
         self._detail.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
-        self._detail.setMinimumHeight(self._detail.fontMetrics().height() * 2 + 2)
         self._detail.setAlignment(Qt.AlignmentFlag.AlignTop)
-        plot.detail.connect(self._detail.setText)  # type: ignore[attr-defined]
+        plot.detail.connect(lambda text: self._detail.setText(text or HINT))  # type: ignore[attr-defined]
         self._arrange()
 
     def _arrange(self) -> None:
@@ -108,7 +109,7 @@ class PlotPanel(QWidget):
             self._fill()
         self._stack.setCurrentIndex(int(numbers))
         self._save.setEnabled(not numbers)
-        self._detail.clear()
+        self._detail.setText("" if numbers else HINT)
 
     def _fill(self) -> None:
         fresh = not self._model.numbers.header

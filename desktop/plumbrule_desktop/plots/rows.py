@@ -27,6 +27,8 @@ class RowPlot(QWidget):
     """Rows are stepped through with the arrow keys or the mouse; `detail` says what the chosen one is."""
 
     detail = Signal(str)
+    grid = True
+    """Whether the scale's lines run through the rows."""
 
     def __init__(self, name: str, row_height: float, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -141,7 +143,8 @@ class RowPlot(QWidget):
         for value in ticks(low, high, most):
             x = self.x_of(value, lane)
             painter.setPen(QPen(QColor(c.line), 1))
-            painter.drawLine(round(x), round(lane.top()), round(x), round(lane.bottom() + 4))
+            top = lane.top() if self.grid else lane.bottom()
+            painter.drawLine(round(x), round(top), round(x), round(lane.bottom() + 4))
             painter.setPen(QColor(c.muted))
             text = tick_text(value, size)
             wide = metrics.horizontalAdvance(text)

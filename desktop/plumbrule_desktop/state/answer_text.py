@@ -3,7 +3,7 @@
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Answer, Judgement
 from plumbrule_core.units import convert
-from plumbrule_desktop.state.amounts import energy, plain
+from plumbrule_desktop.state.amounts import energy, plain, unit_words
 
 HAZARD = (
     "A calculation does not replace measurement. Before any decision where stability, decomposition or "
@@ -40,7 +40,7 @@ def target_words(brief: Brief, judgement: Judgement) -> str:
     needed = within(brief, answer)
     if answer.uncertainty is None or needed is None:
         return "Its uncertainty is not known yet."
-    asked = f"the {energy(needed, answer.unit)} that you asked for"
+    asked = f"the {needed:g} {unit_words(answer.unit)} that you asked for"
     if answer.meets_target:
         return f"This is within {asked}."
     return f"This is wider than {asked}."

@@ -8,7 +8,7 @@ WORDS: dict[Progressing, str] = {
     "done": "done",
     "reused": "already known",
     "failed": "failed",
-    "died": "ended without a word",
+    "died": "died",
     "stopped": "stopped",
 }
 

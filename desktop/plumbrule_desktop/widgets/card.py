@@ -2,6 +2,8 @@
 
 from PySide6.QtWidgets import QFrame, QLabel, QVBoxLayout, QWidget
 
+from plumbrule_core.documents.findings import Level
+
 
 class Card(QFrame):
     """A frame with a rounded border; `column` takes its content."""
@@ -12,6 +14,13 @@ class Card(QFrame):
         self.column = QVBoxLayout(self)
         self.column.setContentsMargins(12, 10, 12, 10)
         self.column.setSpacing(6)
+
+
+def tint(made: QLabel, level: Level | None) -> None:
+    """Write a label in the colour of a verdict, in whatever scheme the window wears; None for plain text."""
+    made.setProperty("tint", level or "")
+    made.style().unpolish(made)
+    made.style().polish(made)
 
 
 def label(text: str = "", role: str = "", wrap: bool = True) -> QLabel:

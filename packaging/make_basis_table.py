@@ -1,7 +1,7 @@
 """Writes the shipped tables of basis sets and frozen cores from what PySCF has.
 
-Run it after a change of the PySCF version: `python packaging/make_basis_table.py`. It prints the elements that it left
-out because the library's data for them cannot be right, and why.
+Run it after a change of the PySCF version: `python packaging/make_basis_table.py`. It prints the elements
+that it left out because the library's data for them cannot be right, and why.
 """
 
 import json

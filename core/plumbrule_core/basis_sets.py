@@ -35,7 +35,7 @@ class Basis:
     relativistic: bool = False
     """Contracted for a scalar relativistic Hamiltonian; right with X2C alone."""
     polarised: bool = False
-    """Whether it has functions of higher angular momentum than the occupied shells, which correlation needs."""
+    """Whether it has functions of higher angular momentum than occupied shells; correlation needs them."""
     larger: str | None = None
     smaller: str | None = None
     diffuse_partner: str | None = None

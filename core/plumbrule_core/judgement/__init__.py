@@ -1,4 +1,4 @@
-"""Judgement: from readings to findings, budget, verdict and answer. Pure functions of documents; no library loads."""
+"""Judgement: from readings to findings, budget, verdict and answer. Pure functions of documents."""
 
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
@@ -34,7 +34,7 @@ def judge(brief: Brief, plan: Plan, results: Mapping[str, Result]) -> Judgement:
     if best and answer:
         standing = Standing(best.rung, answer.value, answer.uncertainty, lines[0].cause if lines else "")
         findings += run(RULES, ("answer",), replace(case, standing=standing))
-    told = ordered(findings)
+    told = ordered(findings, best.rung if best else "")
     return Judgement(
         verdict=overall(case, best, answer, told),
         answer=answer,
@@ -88,7 +88,11 @@ def _comparison(
 
 
 def _compared(
-    case: Case, value: LadderValue, values: Sequence[LadderValue], best: LadderValue, findings: Sequence[Finding]
+    case: Case,
+    value: LadderValue,
+    values: Sequence[LadderValue],
+    best: LadderValue,
+    findings: Sequence[Finding],
 ) -> Compared:
     out = stopped(findings, value.rung)
     return Compared(

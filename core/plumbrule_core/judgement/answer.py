@@ -51,12 +51,13 @@ def _sum(case: Case, rung: str, basis: str) -> float | None:
 
 
 def refuse_unlike(results: list[Result], settings: Mapping[str, Settings]) -> None:
-    """Raise UnlikeRecipes where the results were not made with one recipe; the sentence shows what differs."""
+    """Raise UnlikeRecipes where the results are not of one recipe; the sentence says what differs."""
     first = results[0]
     for other in results[1:]:
         if other.level != first.level:
             raise UnlikeRecipes(
-                f"{first.species} and {other.species} were not computed with the same recipe, so their energies "
+                f"{first.species} and {other.species} were not computed with the same recipe, so their "
+                "energies "
                 f"may not be subtracted: {_difference(first, other, settings)}. "
                 "Compute the missing species with the recipe of the other."
             )
@@ -67,7 +68,9 @@ def _difference(first: Result, other: Result, settings: Mapping[str, Settings]) 
     if one is None or two is None:
         return f"the settings of {(first if one is None else other).species} are not those of this plan"
     rows = [(key, value, two.to_data().get(key)) for key, value in one.to_data().items()]
-    return "; ".join(f"{key.replace('_', ' ')} is {a} in one and {b} in the other" for key, a, b in rows if a != b)
+    return "; ".join(
+        f"{key.replace('_', ' ')} is {a} in one and {b} in the other" for key, a, b in rows if a != b
+    )
 
 
 def _value(case: Case, rung: str, at: Mapping[str, float], hartree_fock: Mapping[str, float]) -> LadderValue:

@@ -7,15 +7,14 @@ have to be added to the number; it is shown, and not hidden in the bar. A total 
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 from plumbrule_core.documents.findings import BudgetLine
 from plumbrule_core.documents.questions import EnergyQuestion
 from plumbrule_core.judgement.answer import LadderValue
 from plumbrule_core.judgement.budget_basis import basis_line
-from plumbrule_core.judgement.budget_tables import TABLES, energy_class
 from plumbrule_core.judgement.budget_method import method_line
 from plumbrule_core.judgement.budget_physics import core_line, geometry_line, relativity_line, spin_orbit_line
+from plumbrule_core.judgement.budget_tables import energy_class
 from plumbrule_core.judgement.case import Case
 
 

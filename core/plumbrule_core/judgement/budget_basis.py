@@ -2,6 +2,7 @@
 
 from plumbrule_core.basis_sets import Basis
 from plumbrule_core.documents.findings import BudgetLine
+from plumbrule_core.documents.questions import BondQuestion
 from plumbrule_core.judgement.answer import LadderValue
 from plumbrule_core.judgement.budget_tables import CLASSES, TABLES, in_unit, size_factor
 from plumbrule_core.judgement.case import Case
@@ -17,12 +18,13 @@ def basis_line(case: Case, best: LadderValue, kind: str) -> BudgetLine | None:
     if not used:
         return None
     rms, row, doubts = _rms(used, kind, best.extrapolated)
-    factor = size_factor(case) if kind == "atomisation" else 1.0
+    factor = size_factor(case, kind)
     expected = in_unit(2 * rms * factor, case.unit)
     seen = _internal(case, best)
     measured = seen is not None and seen > expected
     how = (
-        f"the limit lies {seen:.3g} {case.unit} from the larger set, more than the {expected:.3g} of comparable cases"
+        f"the limit lies {seen:.3g} {case.unit} from the larger set, more than the {expected:.3g} of "
+        "comparable cases"
         if measured
         else f"twice the rms error of {row} for {kind} energies"
     )
@@ -55,7 +57,9 @@ def _rms(used: tuple[Basis, ...], kind: str, extrapolated: bool) -> tuple[float,
     return _single(largest, place, factor, doubts)
 
 
-def _single(largest: Basis, place: int, factor: float, doubts: tuple[str, ...]) -> tuple[float, str, tuple[str, ...]]:
+def _single(
+    largest: Basis, place: int, factor: float, doubts: tuple[str, ...]
+) -> tuple[float, str, tuple[str, ...]]:
     levels, zeta = _TABLE["levels"], largest.zeta
     if str(zeta) in levels:
         return factor * levels[str(zeta)][place][1], f"{largest.name} (cardinal number {zeta})", doubts
@@ -73,12 +77,13 @@ def _widened(largest: Basis) -> tuple[float, tuple[str, ...]]:
 
 
 def _shift(case: Case, largest: Basis, kind: str, factor: float) -> float | None:
-    """The mean error of one set, with its sign where theory fixes it: bonds and ionisations come out too small."""
-    sign = {"atomisation": 1.0, "ionisation": 1.0, "attachment": -1.0}.get(kind)
+    """The mean error of one set, signed where theory fixes the sign: bonds come out too small."""
+    breaking = kind == "atomisation" or isinstance(case.question, BondQuestion)
+    sign = 1.0 if breaking else {"ionisation": 1.0, "attachment": -1.0}.get(kind)
     levels = _TABLE["levels"]
     if sign is None or str(largest.zeta) not in levels:
         return None
-    if kind == "atomisation" and not _breaks(case):
+    if breaking and not _breaks(case):
         sign = -sign
     return sign * in_unit(factor * levels[str(largest.zeta)][CLASSES.index(kind)][0], case.unit)
 

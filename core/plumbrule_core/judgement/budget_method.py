@@ -42,7 +42,11 @@ def _beyond_triples(case: Case, best: LadderValue, values: Sequence[LadderValue]
         return BudgetLine(cause=CAUSE, size=floor, unit=case.unit, how=how, source=_BEYOND["source"])
     triples = from_hartree(abs(best.hartree - doubles.hartree), case.unit)
     share = _BEYOND["share_of_triples"] * triples
-    how = f"a tenth of what (T) contributes ({triples:.3g} {case.unit})" if share > floor else "the floor for CCSD(T)"
+    how = (
+        f"a tenth of what (T) contributes ({triples:.3g} {case.unit})"
+        if share > floor
+        else "the floor for CCSD(T)"
+    )
     return BudgetLine(cause=CAUSE, size=max(floor, share), unit=case.unit, how=how, source=_BEYOND["source"])
 
 
@@ -51,7 +55,7 @@ def _left_out(case: Case, rung: str, kind: str) -> BudgetLine:
     row = rung if rung in table else RUNGS[rung].kind
     if row not in table:
         row = "CCSD"
-    factor = size_factor(case) if kind == "atomisation" else 1.0
+    factor = size_factor(case, kind)
     size = in_unit(TWO_SIGMA_OF_MEAN * factor * column("left_out", row, kind), case.unit)
     how = f"two standard deviations of what {rung} misses of CCSD(T) in {kind} energies"
     return BudgetLine(

@@ -18,16 +18,27 @@ MILLIDYNE_PER_ANGSTROM = 1.0 / 15.5689
 def core_line(case: Case, kind: str) -> BudgetLine | None:
     """The correlation of the core: left out where it is frozen, small where the basis was made for it."""
     table = TABLES["core"]
-    if all(view.correlated_electrons == view.species.electrons for view in case.views) and case.recipe.core == "frozen":
+    if (
+        all(view.correlated_electrons == view.species.electrons for view in case.views)
+        and case.recipe.core == "frozen"
+    ):
         return None
     treated = case.recipe.core == "all" and all(basis.core_valence for basis in case.bases)
     heavy = heaviest(case) > 10
-    kcal = table["treated"] if treated else column("core", "frozen", kind) * (table["heavier_factor"] if heavy else 1.0)
-    factor = size_factor(case) if kind == "atomisation" else 1.0
+    kcal = (
+        table["treated"]
+        if treated
+        else column("core", "frozen", kind) * (table["heavier_factor"] if heavy else 1.0)
+    )
+    factor = size_factor(case, kind)
     how = "all electrons are correlated" if treated else "frozen core; typical size of what is left out"
     source = table["source"] + (f"; {table['heavier_source']}" if heavy and not treated else "")
     return BudgetLine(
-        cause="core correlation", size=in_unit(kcal * factor, case.unit), unit=case.unit, how=how, source=source
+        cause="core correlation",
+        size=in_unit(kcal * factor, case.unit),
+        unit=case.unit,
+        how=how,
+        source=source,
     )
 
 
@@ -35,9 +46,13 @@ def relativity_line(case: Case, kind: str) -> BudgetLine:
     """Scalar relativity: left out, in a core potential, or treated by X2C."""
     table = TABLES["relativity"]
     kcal, how = _relativity(case, kind)
-    factor = size_factor(case) if kind == "atomisation" else 1.0
+    factor = size_factor(case, kind)
     return BudgetLine(
-        cause="scalar relativity", size=in_unit(kcal * factor, case.unit), unit=case.unit, how=how, source=table["source"]
+        cause="scalar relativity",
+        size=in_unit(kcal * factor, case.unit),
+        unit=case.unit,
+        how=how,
+        source=table["source"],
     )
 
 
@@ -51,7 +66,10 @@ def _relativity(case: Case, kind: str) -> tuple[float, str]:
     left_out = next(size for limit, size in rows.items() if heaviest_bare <= int(limit))
     if len(bare) < len(symbols(case)) and table["potential"] >= left_out:
         return table["potential"], "in the core potential of the heavy atoms"
-    return left_out, f"left out; typical size up to {max(bare, key=lambda s: ELEMENTS[s].number, default='H')}"
+    return (
+        left_out,
+        f"left out; typical size up to {max(bare, key=lambda s: ELEMENTS[s].number, default='H')}",
+    )
 
 
 def symbols(case: Case) -> tuple[str, ...]:
@@ -71,7 +89,9 @@ def geometry_line(case: Case) -> BudgetLine | None:
     kcal = convert(math.hypot(*strains), "hartree", "kcal/mol")
     if kcal == 0:
         return None
-    worst = next((o for o in ("force field", "cut", "unknown") if o in map(origin_of, case.species)), "optimised")
+    worst = next(
+        (o for o in ("force field", "cut", "unknown") if o in map(origin_of, case.species)), "optimised"
+    )
     words = {
         "force field": "built by a force field",
         "cut": "cut from the molecule and not relaxed, or of unknown origin",
@@ -97,7 +117,7 @@ def strain(species: Species) -> float:
 
 
 def spin_orbit_line(case: Case) -> BudgetLine | None:
-    """The spin-orbit lowering of atoms and small radicals, a known shift; what is not in the table is said."""
+    """The spin-orbit lowering of atoms and small radicals, a known shift; gaps in the table are said."""
     shifts = [(part, _lowering(part.species)) for part in case.parts]
     known = math.fsum(-part.coefficient * cm for part, cm in shifts if cm is not None)
     unknown = [part.species.formula for part, cm in shifts if cm is None]

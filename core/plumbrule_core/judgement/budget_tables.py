@@ -5,7 +5,7 @@ from collections.abc import Mapping
 from types import MappingProxyType
 from typing import Any
 
-from plumbrule_core.documents.questions import IonisationQuestion, ReactionQuestion
+from plumbrule_core.documents.questions import BondQuestion, IonisationQuestion, ReactionQuestion
 from plumbrule_core.judgement.case import Case
 from plumbrule_core.units import EnergyUnit, convert
 from plumbrule_resources import text
@@ -30,8 +30,8 @@ def column(table: str, row: str, kind: str) -> float:
 def energy_class(case: Case) -> str:
     """Which column fits: the question's own, made sharper by its species.
 
-    A reaction with single atoms on a side alone is an atomisation, one with unpaired electrons is open-shell;
-    an ionisation that adds electrons is an attachment.
+    Atoms alone on one side make an atomisation, unpaired electrons an open-shell reaction; a bond whose
+    fragments are not both atoms is such a reaction too. An ionisation that adds electrons is an attachment.
     """
     question = case.question
     if question is None:
@@ -39,7 +39,7 @@ def energy_class(case: Case) -> str:
     if isinstance(question, IonisationQuestion):
         before, after = case.brief.by_name[question.start], case.brief.by_name[question.to]
         return "ionisation" if after.charge > before.charge else "attachment"
-    if isinstance(question, ReactionQuestion):
+    if isinstance(question, ReactionQuestion | BondQuestion):
         return _reaction_class(case)
     return question.energy_class
 
@@ -51,12 +51,12 @@ def _reaction_class(case: Case) -> str:
     return "open-shell" if any(part.species.multiplicity > 1 for part in case.parts) else "closed-shell"
 
 
-def size_factor(case: Case) -> float:
-    """How many bonds an atomisation breaks beyond those of the small molecules that the table knows.
+def size_factor(case: Case, kind: str) -> float:
+    """How many bonds an atomisation breaks beyond those of the small molecules that the table knows; else 1.
 
     The table's atomisations are of two to about five atoms; errors grow with the number of bonds.
     """
-    if not isinstance(case.question, ReactionQuestion):
+    if kind != "atomisation":
         return 1.0
     atoms = max((len(part.species.atoms) for part in case.parts), default=1)
     return max(1.0, (atoms - 1) / 4)

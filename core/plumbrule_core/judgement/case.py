@@ -85,8 +85,13 @@ class SpeciesView:
 
     @property
     def share_of_triples(self) -> float | None:
-        """(T) divided by the whole correlation energy; None for two electrons or where it was not computed."""
+        """(T) divided by the whole correlation energy; None for two electrons or where not computed."""
         return None if self.exact_from_ccsd else self.number("share_of_triples")
+
+
+def _is_ground(atom: Species) -> bool:
+    ground = ELEMENTS[atom.atoms[0].symbol].ground_multiplicity
+    return atom.charge == 0 and atom.multiplicity == ground
 
 
 @dataclass(frozen=True, slots=True)
@@ -200,7 +205,9 @@ class Case:
 
     def _seen(self, species: Species) -> SpeciesView:
         names = tuple(basis.name for basis in self.bases)
-        return SpeciesView(species, self._by_content.get(species.content, {}), names, self._correlated(species))
+        return SpeciesView(
+            species, self._by_content.get(species.content, {}), names, self._correlated(species)
+        )
 
     def _correlated(self, species: Species) -> int:
         symbols = [atom.symbol for atom in species.atoms]
@@ -220,7 +227,7 @@ class Case:
         found: dict[str, SpeciesView] = {}
         for task in self.plan.tasks:
             one = task.spec.species
-            if len(one.atoms) == 1 and one.charge == 0:
+            if len(one.atoms) == 1 and _is_ground(one):
                 found.setdefault(one.atoms[0].symbol, self.view(one))
         return found
 
@@ -229,12 +236,15 @@ class Case:
         whole = view.energy(rung, basis)
         if whole is None or len(view.species.atoms) < 2 or view.species.charge:
             return None
-        atoms = [self._atoms[a.symbol].energy(rung, basis) if a.symbol in self._atoms else None for a in view.species.atoms]
+        atoms = [
+            self._atoms[a.symbol].energy(rung, basis) if a.symbol in self._atoms else None
+            for a in view.species.atoms
+        ]
         known = [energy for energy in atoms if energy is not None]
         return math.fsum(known) - whole if len(known) == len(atoms) else None
 
     def tae_triples(self, view: SpeciesView) -> float | None:
-        """%TAE[(T)]: what (T) adds to the atomisation energy, in per cent of it; None where it is not defined.
+        """%TAE[(T)]: what (T) adds to the atomisation energy, in per cent of it; None where undefined.
 
         100 (TAE[CCSD(T)] - TAE[CCSD]) / TAE[CCSD(T)] (Karton et al., J. Chem. Phys. 125, 144108 (2006)).
         """

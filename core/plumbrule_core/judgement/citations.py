@@ -1,5 +1,6 @@
 """What a report of this answer must cite: methods, extrapolation and the diagnostics that were used."""
 
+import re
 from collections.abc import Iterable, Sequence
 
 from plumbrule_core.documents.findings import Finding
@@ -9,6 +10,7 @@ from plumbrule_core.judgement.extrapolation import CORRELATION_SOURCE, HF_SOURCE
 from plumbrule_core.judgement.thresholds import THRESHOLDS
 from plumbrule_core.rungs import RUNGS
 
+_YEAR = re.compile(r"\(\d{4}\)$")
 DIAGNOSTICS = {
     "T1": ("t1_closed", "t1_open"),
     "D1": ("d1",),
@@ -42,8 +44,8 @@ def _diagnostics(case: Case) -> Iterable[str]:
 
 
 def _published(findings: Sequence[Finding]) -> Iterable[str]:
-    """Sources that name a year in brackets are publications; the others are our own or rules of thumb."""
+    """Sources that end with a year in brackets are publications; the others are our own or rules of thumb."""
     for finding in findings:
         for evidence in finding.evidence:
-            if evidence.source.endswith(")") and "own" not in evidence.source.split():
+            if _YEAR.search(evidence.source):
                 yield evidence.source

@@ -2,8 +2,8 @@
 
 No single reading decides. The families are the stability of the reference, the doubles and the singles
 amplitudes, the weight of the triples, the natural occupations, and the spin. Grades: 0 calm, 1 raised,
-2 serious, 3 broken. Published limits where there are any; how far beyond them a reading must lie to be serious
-is our own calibration (`thresholds.json` names each).
+2 serious, 3 broken. Limits are published ones where there are any; how far beyond them is serious is
+our own calibration (`thresholds.json` names each).
 """
 
 from collections.abc import Callable, Mapping
@@ -43,7 +43,7 @@ def _worst(family: str, *graded: tuple[int, tuple[Evidence, ...]]) -> Grade:
 
 
 def reference_grade(view: SpeciesView) -> Grade:
-    """The stability of a restricted reference: how deep the unrestricted solution lies, and how unpaired it is."""
+    """The stability of a restricted reference: how deep a lower solution lies, how unpaired it is."""
     depth, unpaired = view.number("instability_depth"), view.number("uhf_fractional")
     if not view.closed_shell or depth is None or depth <= THRESHOLDS["instability_depth_care"].value:
         return Grade("reference", 0)
@@ -89,7 +89,7 @@ def singles_grade(view: SpeciesView) -> Grade:
 
 
 def triples_grade(view: SpeciesView, case: Case) -> Grade:
-    """The weight of (T): in the atomisation energy where the atoms were computed, and in the correlation energy."""
+    """The weight of (T) in the atomisation energy (where atoms were computed) and in the correlation energy."""
     shares = ("share_of_triples_raised", "share_of_triples_serious", "share_of_triples_broken")
     return _worst(
         "triples",

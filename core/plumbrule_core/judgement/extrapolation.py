@@ -4,7 +4,8 @@ import math
 
 HF_SOURCE = "Hartree-Fock limit from two sets: Karton and Martin, Theor. Chem. Acc. 115, 330 (2006)"
 CORRELATION_SOURCE = (
-    "Correlation limit from two sets, X^-3: Helgaker, Klopper, Koch and Noga, J. Chem. Phys. 106, 9639 (1997); "
+    "Correlation limit from two sets, X^-3: Helgaker, Klopper, Koch and Noga, J. Chem. Phys. 106, 9639 "
+    "(1997); "
     "Halkier et al., Chem. Phys. Lett. 286, 243 (1998)"
 )
 

@@ -6,7 +6,18 @@ from plumbrule_core.documents.species import Species
 
 Origin = Literal["atom", "optimised", "force field", "cut", "unknown"]
 
-_GOOD = ("optimi", "relaxed", "experiment", "measured", "published", "ccsd", "mp2", "b3lyp", "dft", "reference geometry")
+_GOOD = (
+    "optimi",
+    "relaxed",
+    "experiment",
+    "measured",
+    "published",
+    "ccsd",
+    "mp2",
+    "b3lyp",
+    "dft",
+    "reference geometry",
+)
 _BUILT = ("smiles", "force field", "mmff", "uff", "built", "drawn")
 
 

@@ -24,9 +24,11 @@ def stopped(findings: Iterable[Finding], rung: str) -> bool:
 def best_of(values: Sequence[LadderValue], findings: Sequence[Finding]) -> LadderValue | None:
     """The rung the answer stands on: the highest of the ladder that is not stopped.
 
-    Functionals only where there is no wave function. Where all are stopped, the highest is shown all the same.
+    Functionals only where there is no wave function. Where all are stopped, the highest is still shown.
     """
-    ranked = sorted(values, key=lambda v: (RUNGS[v.rung].kind == "wave function", RUNGS[v.rung].rank), reverse=True)
+    ranked = sorted(
+        values, key=lambda v: (RUNGS[v.rung].kind == "wave function", RUNGS[v.rung].rank), reverse=True
+    )
     kinds = {RUNGS[value.rung].kind for value in ranked}
     if "wave function" in kinds:
         ranked = [value for value in ranked if RUNGS[value.rung].kind == "wave function"]
@@ -34,9 +36,9 @@ def best_of(values: Sequence[LadderValue], findings: Sequence[Finding]) -> Ladde
     return next(iter(standing or ranked), None)
 
 
-def ordered(findings: Iterable[Finding]) -> tuple[Finding, ...]:
-    """The worst first; the order of the rules within one severity."""
-    return tuple(sorted(findings, key=lambda one: -SEVERITIES.index(one.severity)))
+def ordered(findings: Iterable[Finding], rung: str = "") -> tuple[Finding, ...]:
+    """The worst first, those that speak of the answer's rung before others; else the order of the rules."""
+    return tuple(sorted(findings, key=lambda one: (-SEVERITIES.index(one.severity), not applies(one, rung))))
 
 
 def worst(findings: Iterable[Finding]) -> Severity:
@@ -44,7 +46,9 @@ def worst(findings: Iterable[Finding]) -> Severity:
     return max((one.severity for one in findings), key=SEVERITIES.index, default="note")
 
 
-def overall(case: Case, best: LadderValue | None, answer: Answer | None, findings: Sequence[Finding]) -> Verdict:
+def overall(
+    case: Case, best: LadderValue | None, answer: Answer | None, findings: Sequence[Finding]
+) -> Verdict:
     """The verdict on the answer; findings are ordered, the worst first."""
     if best is None or answer is None:
         return _without_answer(case, findings)
@@ -58,7 +62,9 @@ def overall(case: Case, best: LadderValue | None, answer: Answer | None, finding
     return Verdict(level=LEVELS[severity], headline=_led(severity, headline), reasons=reasons or (headline,))
 
 
-def _with_lost_rungs(case: Case, best: LadderValue, findings: Sequence[Finding], severity: Severity) -> Severity:
+def _with_lost_rungs(
+    case: Case, best: LadderValue, findings: Sequence[Finding], severity: Severity
+) -> Severity:
     """An answer that had to step down from a stopped rung is at least to be taken with care."""
     above = [n for n in case.wave_functions if RUNGS[n].rank > RUNGS[best.rung].rank and stopped(findings, n)]
     return "care" if above and severity == "note" else severity
@@ -117,7 +123,11 @@ def of_species(case: Case, view: SpeciesView, rung: str | None, findings: Sequen
     reasons = tuple(dict.fromkeys(one.headline for one in own if one.severity != "note"))
     if severity != "note":
         return Verdict(level=LEVELS[severity], headline=_led(severity, reasons[0]), reasons=reasons)
-    if any(task.id not in case.results for task in case.plan.tasks if task.spec.species.content == view.species.content):
+    if any(
+        task.id not in case.results
+        for task in case.plan.tasks
+        if task.spec.species.content == view.species.content
+    ):
         return Verdict(level="unknown", headline="So far nothing speaks against it.")
     calm = f"One determinant describes {view.name}."
     return Verdict(level="sound", headline=f"Sound: {calm[0].lower()}{calm[1:]}", reasons=(calm,))

@@ -6,6 +6,7 @@ from plumbrule_core.judgement.rules import (
     convergence,
     correlation,
     cost,
+    hazard,
     ladder,
     one_determinant,
     reference,
@@ -27,5 +28,6 @@ RULES: tuple[Rule, ...] = (
     *basis.RULES,
     *cost.RULES,
     *target.RULES,
+    *hazard.RULES,
 )
 """Every rule, in the order in which findings of equal severity are shown."""

@@ -4,7 +4,7 @@ from collections.abc import Callable
 
 from plumbrule_core.documents.findings import Finding, Severity
 from plumbrule_core.judgement.case import Case, SpeciesView
-from plumbrule_core.judgement.evidence import corroborated, evidence_of, singles_limits
+from plumbrule_core.judgement.evidence import corroborated, evidence_of, singles_grade, singles_limits
 from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule, measured
 from plumbrule_core.judgement.rules.remedies import active_space
@@ -22,9 +22,10 @@ def _large(
         value, limit = view.number(reading), THRESHOLDS[limit_of(view)]
         if value is None or value <= limit.value or view.exact_from_ccsd:
             return None
-        severity: Severity = "care" if corroborated(case, view, family) else "note"
+        far = family == "singles" and singles_grade(view).grade >= 2
+        severity: Severity = "care" if far or corroborated(case, view, family) else "note"
         agree = (
-            "Another diagnostic agrees, so the error can exceed the bar."
+            "It does not stand alone, so the error can exceed the bar."
             if severity == "care"
             else "No other diagnostic agrees, so the number stands."
         )
@@ -53,14 +54,19 @@ def _t2(case: Case, view: SpeciesView) -> Finding | None:
         severity="care" if large else "note",
         species=view.name,
         rungs=tuple(name for name in case.rungs if name in COUPLED_CLUSTER),
-        headline=f"The largest doubles amplitude of {view.name} is {value:.2f}, above {(serious if large else notable).value:g}.",
-        consequence=DOUBLES if large else "One pair of electrons is correlated strongly; by itself this is no reason to doubt.",
+        headline=f"The largest doubles amplitude of {view.name} is {value:.2f}, above "
+        f"{(serious if large else notable).value:g}.",
+        consequence=DOUBLES
+        if large
+        else "One pair of electrons is correlated strongly; by itself this is no reason to doubt.",
         evidence=(evidence_of("largest_t2", value, serious if large else notable),),
         remedies=active_space(case) if large else (),
     )
 
 
-def _rule(code: str, reading: str, family: str, limit_of: Callable[[SpeciesView], str], why: str, **examples: float) -> Rule:
+def _rule(
+    code: str, reading: str, family: str, limit_of: Callable[[SpeciesView], str], why: str, **examples: float
+) -> Rule:
     return Rule(
         code=code,
         severity="care",
@@ -71,7 +77,9 @@ def _rule(code: str, reading: str, family: str, limit_of: Callable[[SpeciesView]
         quiet=(
             measured(**{reading: examples["calm"]}),
             measured(),
-            Example(molecules={"h2": Molecule(xyz="H 0 0 0; H 0 0 2.2", readings={reading: examples["large"]})}),
+            Example(
+                molecules={"h2": Molecule(xyz="H 0 0 0; H 0 0 2.2", readings={reading: examples["large"]})}
+            ),
         ),
         loud=(measured(**{reading: examples["large"]}),),
     )
@@ -83,7 +91,9 @@ def limit_of_closed(reading: str) -> str:
 
 
 RULES = (
-    _rule("t1-large", "T1", "singles", lambda view: singles_limits(view)[0], SINGLES, calm=0.0118, large=0.031),
+    _rule(
+        "t1-large", "T1", "singles", lambda view: singles_limits(view)[0], SINGLES, calm=0.0118, large=0.031
+    ),
     _rule("d1-large", "D1", "singles", lambda view: singles_limits(view)[1], SINGLES, calm=0.025, large=0.08),
     _rule("d2-large", "D2", "doubles", lambda view: "d2", DOUBLES, calm=0.171, large=0.28),
     Rule(

@@ -49,7 +49,8 @@ def _ask(rule: Rule, case: Case) -> tuple[Finding, ...]:
                 code="rule-broken",
                 severity="care",
                 headline=f"The check '{rule.code}' could not be made.",
-                consequence="The number was not examined in this respect; please report this as a fault of the program.",
+                consequence="The number was not examined in this respect; please report this as a fault "
+                "of the program.",
                 evidence=(Evidence(reading=rule.code, value=f"{type(error).__name__}: {error}"[:400]),),
                 remedies=(Remedy(label="Save the report and send it to whoever looks after the program"),),
             ),

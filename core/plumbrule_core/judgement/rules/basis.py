@@ -11,7 +11,9 @@ from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import change, covering, larger_basis, with_diffuse
 
 PRACTICE = "common practice, no source"
-STATISTICS = "own statistics from public CCSD(T) energies to 6Z: DT is off by as much as TZ for closed-shell reactions"
+STATISTICS = (
+    "own statistics from public CCSD(T) energies to 6Z: DT is off by as much as TZ for closed-shell reactions"
+)
 
 
 def _anion(case: Case, view: SpeciesView) -> Finding | None:
@@ -23,7 +25,8 @@ def _anion(case: Case, view: SpeciesView) -> Finding | None:
         severity="care",
         species=view.name,
         headline=f"{view.name} is an anion, and {largest.name} has no diffuse functions.",
-        consequence="The extra electron is squeezed into too small a space; its energy is too high by tens of kJ/mol.",
+        consequence="The extra electron is squeezed into too small a space; its energy is too high by "
+        "tens of kJ/mol.",
         evidence=(Evidence(reading="charge", value=float(view.species.charge), source=PRACTICE),),
         remedies=with_diffuse(case),
     )
@@ -33,18 +36,27 @@ def _core(case: Case) -> Iterator[Finding]:
     if case.recipe.core == "frozen" or not any(name != "HF" for name in case.wave_functions):
         return
     for basis in case.bases:
-        cored = [one.name for one in case.species if not basis.missing(one.counts) and frozen_orbitals(one.counts, basis)]
+        cored = [
+            one.name
+            for one in case.species
+            if not basis.missing(one.counts) and frozen_orbitals(one.counts, basis)
+        ]
         if cored and not basis.core_valence:
             partners = [one.core_partner for one in case.bases if one.core_partner]
             yield Finding(
                 code="core-without-functions",
                 severity="stop",
                 headline=f"All electrons are to be correlated, but {basis.name} describes the valence alone.",
-                consequence=f"The core of {', '.join(cored)} would be correlated badly; the error exceeds what is to be gained.",
+                consequence=f"The core of {', '.join(cored)} would be correlated badly; the error "
+                "exceeds what is to be gained.",
                 evidence=(Evidence(reading="basis", value=basis.name, source=PRACTICE),),
                 remedies=(
                     change("Freeze the core", "recipe.core", "frozen"),
-                    *((change(f"Use {' and '.join(partners)}", "recipe.basis", partners),) if partners else ()),
+                    *(
+                        (change(f"Use {' and '.join(partners)}", "recipe.basis", partners),)
+                        if partners
+                        else ()
+                    ),
                 ),
             )
 
@@ -60,7 +72,9 @@ def _uncovered(case: Case) -> Iterator[Finding]:
                 species=next(iter(lacking)),
                 headline=f"{basis.name} has no functions for {', '.join(elements)}.",
                 consequence="Nothing can be run with this basis set.",
-                evidence=(Evidence(reading="basis", value=basis.name, source="the basis table of this program"),),
+                evidence=(
+                    Evidence(reading="basis", value=basis.name, source="the basis table of this program"),
+                ),
                 remedies=covering(case),
             )
 
@@ -73,7 +87,8 @@ def _minimal(case: Case) -> Iterator[Finding]:
         code="basis-minimal",
         severity="care",
         headline=f"{largest.name} is a minimal basis set.",
-        consequence="It is good for a first look; reaction and bond energies from it are off by tens of kcal/mol.",
+        consequence="It is good for a first look; reaction and bond energies from it are off by tens of "
+        "kcal/mol.",
         evidence=(Evidence(reading="basis", value=largest.name, source=PRACTICE),),
         remedies=larger_basis(case),
     )
@@ -86,7 +101,8 @@ def _not_a_limit(case: Case) -> Iterator[Finding]:
         code="extrapolation-from-double-zeta",
         severity="note",
         headline="An extrapolation from double and triple zeta is not a limit.",
-        consequence="For reactions of closed-shell molecules it is no better than triple zeta alone; the bar is that of the pair.",
+        consequence="For reactions of closed-shell molecules it is no better than triple zeta alone; "
+        "the bar is that of the pair.",
         evidence=(Evidence(reading="basis", value=case.recipe.basis_text, source=STATISTICS),),
         remedies=larger_basis(case),
     )

@@ -22,7 +22,11 @@ def _unconverged(case: Case) -> Iterator[Finding]:
 
 def _not_arrived(case: Case, view: SpeciesView, rung: str, basis: str, result: Result) -> Finding:
     blocked = tuple(name for name in case.rungs if name == rung or rung in _all_needs(name))
-    above = f", nor is anything above it ({', '.join(name for name in blocked if name != rung)})" if len(blocked) > 1 else ""
+    above = (
+        f", nor is anything above it ({', '.join(name for name in blocked if name != rung)})"
+        if len(blocked) > 1
+        else ""
+    )
     return Finding(
         code="not-converged",
         severity="stop",
@@ -32,7 +36,10 @@ def _not_arrived(case: Case, view: SpeciesView, rung: str, basis: str, result: R
         consequence=f"Its energy is not a result{above}.",
         evidence=(Evidence(reading="iterations", value=float(result.iterations)),),
         remedies=(
-            advice("Check the geometry and the spin state first; a difficult convergence often has its reason there"),
+            advice(
+                "Check the geometry and the spin state first; a difficult convergence often has its "
+                "reason there"
+            ),
             *(active_space(case) if rung != "HF" else ()),
         ),
     )
@@ -62,7 +69,8 @@ def _dependent(case: Case, view: SpeciesView) -> Finding | None:
             else f"Basis functions of {view.name} are nearly copies of each other."
         ),
         consequence=(
-            "The species of the question no longer have the same basis; the difference can be off by some kJ/mol."
+            "The species of the question no longer have the same basis; the difference can be off by "
+            "some kJ/mol."
             if removed
             else "Rounding errors grow, but nothing was removed and the number stands."
         ),

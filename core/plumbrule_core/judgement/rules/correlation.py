@@ -25,9 +25,11 @@ def _triples(case: Case, view: SpeciesView) -> Finding | None:
         rungs=tuple(name for name in case.rungs if name in ("HF", "MP2", "CCSD", "CCSD(T)")),
         headline=_triples_headline(view.name, percent, share),
         consequence=(
-            "Where (T) is this large, what lies beyond it is no longer small, and rungs below CCSD(T) are far off."
+            "Where (T) is this large, what lies beyond it is no longer small, and rungs below CCSD(T) "
+            "are far off."
             if severity == "care"
-            else "Rungs below CCSD(T) are off by several kcal/mol here; the bar of CCSD(T) allows for what lies beyond it."
+            else "Rungs below CCSD(T) are off by several kcal/mol here; the bar of CCSD(T) allows for "
+            "what lies beyond it."
         ),
         evidence=tuple(shown),
         remedies=active_space(case) if severity == "care" else (),
@@ -37,7 +39,9 @@ def _triples(case: Case, view: SpeciesView) -> Finding | None:
 def _passed(reading: str, value: float | None, raised: str, serious: str) -> tuple[Evidence, ...]:
     if value is None or value <= THRESHOLDS[raised].value:
         return ()
-    return (evidence_of(reading, value, THRESHOLDS[serious if value > THRESHOLDS[serious].value else raised]),)
+    return (
+        evidence_of(reading, value, THRESHOLDS[serious if value > THRESHOLDS[serious].value else raised]),
+    )
 
 
 def _triples_headline(name: str, percent: float | None, share: float | None) -> str:
@@ -56,8 +60,10 @@ def _occupations(case: Case, view: SpeciesView) -> Finding | None:
         severity=severity,
         species=view.name,
         rungs=case.single_reference,
-        headline=f"{view.name} has orbitals that are neither full nor empty: M is {value:.2f}, above {limit.value:g}.",
-        consequence="A second arrangement of electrons has noticeable weight, which methods on one determinant miss in part.",
+        headline=f"{view.name} has orbitals that are neither full nor empty: M is {value:.2f}, above "
+        f"{limit.value:g}.",
+        consequence="A second arrangement of electrons has noticeable weight, which methods on one "
+        "determinant miss in part.",
         evidence=(evidence_of("M", value, limit),),
         remedies=active_space(case) if severity == "care" else (),
     )
@@ -72,8 +78,10 @@ def _diradical(case: Case, view: SpeciesView) -> Finding | None:
         severity="care",
         species=view.name,
         rungs=("HF", "MP2") if view.exact_from_ccsd else case.single_reference,
-        headline=f"{view.name} is a diradical in its unrestricted solution: two orbitals hold one electron each.",
-        consequence="A singlet with two open orbitals needs two determinants; one of them gives an energy that is far too high.",
+        headline=f"{view.name} is a diradical in its unrestricted solution: two orbitals hold one "
+        "electron each.",
+        consequence="A singlet with two open orbitals needs two determinants; one of them gives an "
+        "energy that is far too high.",
         evidence=(evidence_of("uhf_fractional", value, limit),),
         remedies=active_space(case),
     )

@@ -3,10 +3,10 @@
 from collections.abc import Iterator
 
 from plumbrule_core.documents.findings import Evidence, Finding, Remedy
-from plumbrule_core.documents.plan import Forecast, Task
+from plumbrule_core.documents.plan import Task
 from plumbrule_core.judgement.case import Case
 from plumbrule_core.judgement.rules.base import Rule
-from plumbrule_core.judgement.rules.example import Example
+from plumbrule_core.judgement.rules.example import LIGHT, Example
 from plumbrule_core.judgement.rules.remedies import change
 
 LONG_SECONDS = 12 * 3600.0
@@ -34,7 +34,8 @@ def _exceeds(case: Case, task: Task, what: str, needed: float, there: float) -> 
         severity="stop",
         species=task.spec.species.name,
         rungs=(task.spec.rung,),
-        headline=f"{task.label} needs about {needed / 1000:.1f} GB of {what}; {there / 1000:.1f} GB are free.",
+        headline=f"{task.label} needs about {needed / 1000:.1f} GB of {what}; {there / 1000:.1f} GB are "
+        "free.",
         consequence="It would fail, or bring the computer to a halt.",
         evidence=(Evidence(reading=what, value=needed, threshold=there, unit="MB", source=SOURCE),),
         remedies=cheaper(case, task),
@@ -42,7 +43,7 @@ def _exceeds(case: Case, task: Task, what: str, needed: float, there: float) -> 
 
 
 def cheaper(case: Case, task: Task) -> tuple[Remedy, ...]:
-    """What makes the plan smaller: frozen core, fitted integrals, a smaller basis, the task's rung left out."""
+    """What makes the plan smaller: frozen core, fitted integrals, a smaller basis, the rung left out."""
     freeze = (change("Freeze the core", "recipe.core", "frozen"),) if case.recipe.core == "all" else ()
     fit = (
         (change("Use density fitting", "recipe.density_fitting", "yes"),)
@@ -50,7 +51,9 @@ def cheaper(case: Case, task: Task) -> tuple[Remedy, ...]:
         else ()
     )
     smaller = tuple(
-        change(f"Use {basis.smaller}", "recipe.basis", [basis.smaller]) for basis in case.bases[:1] if basis.smaller
+        change(f"Use {basis.smaller}", "recipe.basis", [basis.smaller])
+        for basis in case.bases[:1]
+        if basis.smaller
     )
     left = [name for name in case.recipe.rungs if name != task.spec.rung]
     without = (change(f"Leave out {task.spec.rung}", "recipe.rungs", left),) if left else ()
@@ -70,17 +73,16 @@ def _time(case: Case) -> Iterator[Finding]:
         headline=f"The plan takes about {total.seconds / 3600:.0f} hours.",
         consequence=f"Most of it is {slowest.label}. It can be stopped and carried on at any time.",
         evidence=(
-            Evidence(reading="time", value=total.seconds, threshold=LONG_SECONDS, unit="seconds", source=SOURCE),
+            Evidence(
+                reading="time", value=total.seconds, threshold=LONG_SECONDS, unit="seconds", source=SOURCE
+            ),
         ),
         remedies=cheaper(case, slowest),
     )
 
 
-_LIGHT = Forecast(seconds=10.0, seconds_low=5.0, seconds_high=20.0, memory_mb=200.0)
-
-
 def _priced(**price: float) -> Example:
-    return Example(forecast=_LIGHT.model_copy(update=price))
+    return Example(forecast=LIGHT.model_copy(update=price))
 
 
 RULES = tuple(

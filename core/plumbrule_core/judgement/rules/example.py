@@ -11,6 +11,8 @@ from plumbrule_core.documents.results import Reading, ReadingValue, Result
 from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.judgement.case import Case, Standing
 
+LADDER = ("HF", "MP2", "CCSD", "CCSD(T)")
+LIGHT = Forecast(seconds=10.0, seconds_low=5.0, seconds_high=20.0, memory_mb=200.0)
 MACHINE = Machine(cores=2, memory_mb=8000.0, disk_mb=50000.0)
 
 
@@ -43,7 +45,7 @@ class Example:
     molecules: Mapping[str, Molecule] = field(default_factory=lambda: {"n2": Molecule()})
     question: Mapping[str, Any] = field(default_factory=dict)
     recipe: Mapping[str, Any] = field(default_factory=dict)
-    forecast: Forecast = Forecast(seconds=1.0, seconds_low=0.5, seconds_high=2.0, memory_mb=100.0)
+    forecast: Forecast = LIGHT
     standing: Standing | None = None
 
 
@@ -55,12 +57,15 @@ def measured(**readings: ReadingValue) -> Example:
 def case_of(example: Example) -> Case:
     """The case that a rule sees."""
     species = [one.species(name) for name, one in example.molecules.items()]
-    question = {"kind": "energy", "species": species[0].name, "within": 4.0, **example.question}
+    question: dict[str, Any] = {"kind": "energy", "within": 4.0, **example.question}
+    if question["kind"] == "energy":
+        question["species"] = species[0].name
+    recipe: dict[str, Any] = {"basis": ["cc-pVTZ"], "rungs": list(LADDER), **example.recipe}
     brief = Brief.from_data(
         {
             "question": question,
             "species": [one.to_data() for one in species],
-            "recipe": {"basis": ["cc-pVTZ"], "rungs": ["HF", "MP2", "CCSD", "CCSD(T)"], **example.recipe},
+            "recipe": recipe,
         }
     )
     tasks = tuple(

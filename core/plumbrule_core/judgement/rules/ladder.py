@@ -4,12 +4,13 @@ from collections.abc import Iterator, Mapping
 
 from plumbrule_core.documents.findings import Evidence, Finding
 from plumbrule_core.documents.questions import BondQuestion, EnergyQuestion
+from plumbrule_core.errors import UnlikeRecipes
 from plumbrule_core.judgement.answer import ladder
 from plumbrule_core.judgement.case import Case, Standing
 from plumbrule_core.judgement.rules.base import Rule
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import add_rungs
-from plumbrule_core.judgement.wording import amount
+from plumbrule_core.judgement.wording import amount, listed
 from plumbrule_core.rungs import RUNGS
 from plumbrule_core.units import from_hartree
 
@@ -22,7 +23,10 @@ PRACTICE = "common practice, no source"
 def _values(case: Case) -> Mapping[str, float]:
     if case.question is None or isinstance(case.question, EnergyQuestion):
         return {}
-    return {value.rung: value.hartree for value in ladder(case)}
+    try:
+        return {value.rung: value.hartree for value in ladder(case)}
+    except UnlikeRecipes:  # judge says so itself, once
+        return {}
 
 
 def _unsettled(case: Case) -> Iterator[Finding]:
@@ -37,7 +41,8 @@ def _unsettled(case: Case) -> Iterator[Finding]:
         code="ladder-unsettled",
         severity="care",
         rungs=("CCSD", "CCSD(T)"),
-        headline=f"The last step of the ladder is not the smallest: (T) moves the answer by {amount(triples, case.unit)}.",
+        headline="The last step of the ladder is not the smallest: (T) moves the answer by "
+        f"{amount(triples, case.unit)}.",
         consequence="The ladder has not settled, so what lies beyond (T) need not be small.",
         evidence=(
             Evidence(reading="CCSD to CCSD(T)", value=size, unit=case.unit, source=PRACTICE),
@@ -56,7 +61,8 @@ def _mp2_far(case: Case) -> Iterator[Finding]:
         severity="care",
         rungs=("MP2",),
         headline=f"MP2 is {amount(gap, case.unit)} away from CCSD(T).",
-        consequence="MP2 is not to be used for this question, nor for relatives of it that are too large for CCSD(T).",
+        consequence="MP2 is not to be used for this question, nor for relatives of it that are too "
+        "large for CCSD(T).",
         evidence=(
             Evidence(
                 reading="MP2 minus CCSD(T)",
@@ -81,14 +87,21 @@ def _unbound(case: Case) -> Iterator[Finding]:
         severity="care" if serious else "note",
         species=case.question.species,
         rungs=tuple(below),
-        headline=f"{', '.join(below)} puts the fragments below the molecule: the bond energy is negative.",
+        headline=f"{listed(below)} {'put' if len(below) > 1 else 'puts'} the fragments below the "
+        "molecule: the bond energy is negative.",
         consequence=(
-            "The geometry is far from a minimum, a fragment has the wrong spin state, or the method fails for this bond."
+            "The geometry is far from a minimum, a fragment has the wrong spin state, or the method "
+            "fails for this bond."
             if serious
-            else "Hartree-Fock leaves out what holds this bond together; the correlated rungs are not touched by it."
+            else "Hartree-Fock leaves out what holds this bond together; the correlated rungs are not "
+            "touched by it."
         ),
         evidence=tuple(
-            Evidence(reading=f"bond energy, {rung}", value=from_hartree(_values(case)[rung], case.unit), unit=case.unit)
+            Evidence(
+                reading=f"bond energy, {rung}",
+                value=from_hartree(_values(case)[rung], case.unit),
+                unit=case.unit,
+            )
             for rung in below
         ),
     )
@@ -101,7 +114,10 @@ def _weak_ladder(case: Case) -> Iterator[Finding]:
     if RUNGS[standing.rung].kind == "wave function" and standing.rung != "HF":
         return
     headline, consequence = (
-        ("Hartree-Fock leaves out electron correlation.", "Reaction and bond energies are off by tens of kcal/mol.")
+        (
+            "Hartree-Fock leaves out electron correlation.",
+            "Reaction and bond energies are off by tens of kcal/mol.",
+        )
         if standing.rung == "HF"
         else (
             f"The answer stands on the density functional {standing.rung} alone.",
@@ -121,7 +137,12 @@ def _weak_ladder(case: Case) -> Iterator[Finding]:
 def _fluorine(**molecule: float) -> Example:
     """F2 to two atoms (cc-pVDZ, PySCF 2.14) with the molecule's energies as given."""
     atom = {"HF": -99.37524, "MP2": -99.51584, "CCSD": -99.52669, "CCSD(T)": -99.52757}
-    named = {"HF": molecule["hf"], "MP2": molecule["mp2"], "CCSD": molecule["ccsd"], "CCSD(T)": molecule["full"]}
+    named = {
+        "HF": molecule["hf"],
+        "MP2": molecule["mp2"],
+        "CCSD": molecule["ccsd"],
+        "CCSD(T)": molecule["full"],
+    }
     return Example(
         molecules={
             "f2": Molecule(xyz="F 0 0 0; F 0 0 1.41", energies=named),

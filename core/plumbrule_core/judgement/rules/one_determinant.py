@@ -35,7 +35,8 @@ def _stop(case: Case, view: SpeciesView, raised: list[Grade]) -> Finding:
         species=view.name,
         rungs=case.single_reference,
         headline=f"One determinant does not describe {view.name}.",
-        consequence=f"{_reasons(raised)}. Every rung that stands on one determinant is wrong here by an unknown amount, "
+        consequence=f"{_reasons(raised)}. Every rung that stands on one determinant is wrong here by an "
+        "unknown amount, "
         "typically 15 to 90 kcal/mol, however well it converged.",
         evidence=tuple(one for grade in raised for one in grade.evidence),
         remedies=active_space(case),

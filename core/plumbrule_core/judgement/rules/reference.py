@@ -21,9 +21,12 @@ def _saddle(case: Case, view: SpeciesView) -> Finding | None:
         species=view.name,
         rungs=case.single_reference,
         headline=f"The Hartree-Fock solution of {view.name} is not a minimum.",
-        consequence="A lower solution exists and could not be reached, so every number above it stands on the wrong one.",
+        consequence="A lower solution exists and could not be reached, so every number above it stands "
+        "on the wrong one.",
         evidence=(Evidence(reading="stable", value="no", source=ARITHMETIC),),
-        remedies=() if case.recipe.reference == "UHF" else (change("Use UHF and run", "recipe.reference", "UHF", True),),
+        remedies=()
+        if case.recipe.reference == "UHF"
+        else (change("Use UHF and run", "recipe.reference", "UHF", True),),
     )
 
 
@@ -37,8 +40,25 @@ def _followed(case: Case, view: SpeciesView) -> Finding | None:
         severity="note",
         species=view.name,
         headline=f"The first Hartree-Fock solution of {view.name} was not the lowest.",
-        consequence="It was followed down, and everything above stands on the lower solution. On a curve, the same "
+        consequence="It was followed down, and everything above stands on the lower solution. On a "
+        "curve, the same "
         "solution must be used at every point.",
+        evidence=tuple(Evidence(reading="Hartree-Fock", value=note[:400]) for note in told),
+    )
+
+
+def _spread(case: Case, view: SpeciesView) -> Finding | None:
+    said = [note for (rung, _), result in view.results.items() if rung == "HF" for note in result.notes]
+    told = [note for note in dict.fromkeys(said) if "spread over" in note]
+    if not told:
+        return None
+    return Finding(
+        code="hf-guesses-spread",
+        severity="note",
+        species=view.name,
+        headline=f"Different starts led to different Hartree-Fock solutions of {view.name}.",
+        consequence="The lowest was taken. Another program, or another start, can end in a higher one "
+        "and disagree.",
         evidence=tuple(Evidence(reading="Hartree-Fock", value=note[:400]) for note in told),
     )
 
@@ -57,7 +77,8 @@ def _unstable(case: Case, view: SpeciesView) -> Finding | None:
         severity="care" if deep else "note",
         species=view.name,
         rungs=below_ccsd if view.exact_from_ccsd else case.single_reference,
-        headline=f"{view.name}: an unrestricted solution lies {amount(depth, case.unit)} below the restricted one.",
+        headline=f"{view.name}: an unrestricted solution lies {amount(depth, case.unit)} below the "
+        "restricted one.",
         consequence=(
             "The electron pairs are loosening; coupled cluster often repairs this, MP2 does not."
             if deep
@@ -79,12 +100,17 @@ def _gap(case: Case, view: SpeciesView) -> Finding | None:
         rungs=case.single_reference,
         headline=f"{view.name} has a small Hartree-Fock gap of {gap:.1f} eV.",
         consequence=(
-            "An empty orbital lies below a filled one, so the state that was computed is probably not the ground state."
+            "An empty orbital lies below a filled one, so the state that was computed is probably not "
+            "the ground state."
             if gap < 0
             else "MP2 and (T) divide by such gaps and overshoot when they are small."
         ),
         evidence=(evidence_of("homo_lumo_gap", gap, limit),),
     )
+
+
+def _told(*notes: str) -> Molecule:
+    return Molecule(energies={"HF": -108.9}, notes=notes)
 
 
 RULES = (
@@ -105,12 +131,20 @@ RULES = (
         reads=("notes of HF",),
         source=ARITHMETIC,
         judge=each(_followed),
-        quiet=(Example(molecules={"n2": Molecule(energies={"HF": -108.9}, notes=("20 iterations",))}),),
+        quiet=(Example(molecules={"n2": _told("20 iterations")}),),
+        loud=(Example(molecules={"n2": _told("followed to one 0.70 kJ/mol lower")}),),
+    ),
+    Rule(
+        code="hf-guesses-spread",
+        severity="note",
+        stage="after",
+        reads=("notes of HF",),
+        source=ARITHMETIC,
+        judge=each(_spread),
+        quiet=(Example(molecules={"cn": _told("3 starting guesses; all that converged agree")}),),
         loud=(
             Example(
-                molecules={
-                    "n2": Molecule(energies={"HF": -108.9}, notes=("followed an instability 0.7 kJ/mol down",))
-                }
+                molecules={"cn": _told("3 starting guesses; they spread over 946.6 kJ/mol (0.3605 hartree)")}
             ),
         ),
     ),

@@ -44,7 +44,9 @@ def larger_basis(case: Case) -> tuple[Remedy, ...]:
     if largest is None or largest.zeta >= 5:
         return ()
     if largest.cardinal is None:
-        return _first_covering(case, ("cc-pVTZ", "def2-TZVPP") if largest.zeta < 3 else ("cc-pVQZ", "def2-QZVPP"))
+        return _first_covering(
+            case, ("cc-pVTZ", "def2-TZVPP") if largest.zeta < 3 else ("cc-pVQZ", "def2-QZVPP")
+        )
     if largest.larger is None or BASES[largest.larger].missing(_symbols(case)):
         return ()
     if largest.cardinal >= 3:

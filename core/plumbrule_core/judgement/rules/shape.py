@@ -1,11 +1,301 @@
 """Geometry: what can be seen before anything is computed."""
 
+from collections.abc import Iterator, Sequence
+
 from plumbrule_core.documents.bonding import unbonded_pieces
-from plumbrule_core.documents.findings import Evidence, Finding
+from plumbrule_core.documents.findings import Edit, Evidence, Finding, Remedy
+from plumbrule_core.documents.questions import BondQuestion
+from plumbrule_core.documents.species import Species
+from plumbrule_core.geometry.shape import (
+    CLASH_SHARE,
+    STRETCHED_SHARE,
+    TWIST_LIMIT,
+    clashes,
+    in_bohr_as_angstrom,
+    looks_like_bohr,
+    stretched_bonds,
+    twisted_double_bonds,
+)
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.geometry_origin import origin_of
 from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule
-from plumbrule_core.judgement.rules.remedies import advice
+from plumbrule_core.judgement.rules.remedies import active_space, advice
+from plumbrule_core.judgement.wording import listed
 
-RULES: tuple[Rule, ...] = ()
+PRACTICE = "common practice, no source"
+
+
+def pair_name(species: Species, first: int, second: int) -> str:
+    """`N1-N2`, atoms counted from 1."""
+    return f"{species.atoms[first].symbol}{first + 1}-{species.atoms[second].symbol}{second + 1}"
+
+
+def _clash(case: Case, view: SpeciesView) -> Finding | None:
+    found = clashes(view.species)
+    if not found:
+        return None
+    worst = min(found, key=lambda pair: pair.share)
+    name = pair_name(view.species, worst.first, worst.second)
+    return Finding(
+        code="atoms-clash",
+        severity="stop",
+        species=view.name,
+        headline=f"Atoms of {view.name} lie on top of each other: {name} is {worst.distance:.2f} angstrom.",
+        consequence="No molecule has such a distance, so the number describes nothing.",
+        evidence=(
+            Evidence(
+                reading=f"distance {name}",
+                value=worst.distance,
+                threshold=CLASH_SHARE * worst.normal,
+                unit="angstrom",
+                source=PRACTICE,
+            ),
+        ),
+        remedies=(advice("Correct the coordinates, or build the molecule anew"),),
+    )
+
+
+def _bohr(case: Case, view: SpeciesView) -> Finding | None:
+    if not looks_like_bohr(view.species):
+        return None
+    certain = len(view.species.atoms) > 2
+    return Finding(
+        code="looks-like-bohr",
+        severity="care" if certain else "note",
+        species=view.name,
+        headline=f"The distances of {view.name} look as if they were in bohr.",
+        consequence=(
+            "Every bond is nearly twice its normal length; as it stands, the number is that of a "
+            "molecule torn apart."
+            if certain
+            else "With two atoms this cannot be told from one stretched bond; only you know which it is."
+        ),
+        evidence=(
+            Evidence(
+                reading="every nearest distance",
+                value="1.45 to 2.4 times the normal one",
+                source="arithmetic",
+            ),
+        ),
+        remedies=_from_bohr(case, view.species),
+    )
+
+
+def _from_bohr(case: Case, species: Species) -> tuple[Remedy, ...]:
+    if species.name not in case.brief.by_name:
+        return ()
+    converted = in_bohr_as_angstrom(species).to_data()
+    edits = tuple(
+        Edit(path=f"species.{species.name}.{key}", value=converted[key]) for key in ("atoms", "origin")
+    )
+    return (Remedy(label=f"Take the numbers of {species.name} as bohr", edits=edits),)
+
+
+def _stretched(case: Case, view: SpeciesView) -> Finding | None:
+    found = stretched_bonds(view.species)
+    if not found:
+        return None
+    worst = max(found, key=lambda pair: pair.share)
+    name = pair_name(view.species, worst.first, worst.second)
+    return Finding(
+        code="bond-stretched",
+        severity="care",
+        species=view.name,
+        rungs=case.single_reference,
+        headline=f"{name} in {view.name} is stretched to {worst.share:.2f} times its normal length.",
+        consequence="Methods on one determinant fail on breaking bonds, and CCSD(T) can fall far below "
+        "the two halves.",
+        evidence=(
+            Evidence(
+                reading=f"distance {name}",
+                value=worst.distance,
+                threshold=STRETCHED_SHARE * worst.normal,
+                unit="angstrom",
+                source=PRACTICE,
+            ),
+        ),
+        remedies=active_space(case),
+    )
+
+
+def _twisted(case: Case, view: SpeciesView) -> Finding | None:
+    found = twisted_double_bonds(view.species)
+    if not found:
+        return None
+    worst = max(found, key=lambda twist: twist.angle)
+    name = pair_name(view.species, worst.first, worst.second)
+    return Finding(
+        code="double-bond-twisted",
+        severity="care",
+        species=view.name,
+        rungs=case.single_reference,
+        headline=f"The double bond {name} of {view.name} is twisted by {worst.angle:.0f} degrees.",
+        consequence="Its second pair is breaking; towards 90 degrees one determinant no longer describes it.",
+        evidence=(
+            Evidence(
+                reading=f"twist {name}",
+                value=worst.angle,
+                threshold=TWIST_LIMIT,
+                unit="degrees",
+                source=PRACTICE,
+            ),
+        ),
+        remedies=active_space(case),
+    )
+
+
+def _pieces(case: Case, view: SpeciesView) -> Finding | None:
+    pieces = unbonded_pieces(view.species)
+    if len(pieces) < 2:
+        return None
+    sizes = listed(str(len(piece)) for piece in pieces)
+    return Finding(
+        code="unbonded-pieces",
+        severity="note",
+        species=view.name,
+        headline=f"{view.name} consists of {len(pieces)} pieces that no bond joins.",
+        consequence="Each piece borrows basis functions of the others, which makes them stick together "
+        "too well: up to 2 "
+        "to 3 kcal/mol in double zeta. If this was meant to be one molecule, its geometry is wrong.",
+        evidence=(
+            Evidence(reading="atoms in the pieces", value=sizes, source="own, water dimer in cc-pVDZ"),
+        ),
+        remedies=(advice("For a binding energy, use a large basis set with diffuse functions"),),
+    )
+
+
+def _origin(case: Case, view: SpeciesView) -> Finding | None:
+    if origin_of(view.species) not in ("force field", "unknown"):
+        return None
+    built = origin_of(view.species) == "force field"
+    return Finding(
+        code="geometry-origin",
+        severity="note",
+        species=view.name,
+        headline=(
+            f"The geometry of {view.name} was built by a force field."
+            if built
+            else f"Nobody said where the geometry of {view.name} comes from."
+        ),
+        consequence="What it lies above its minimum is in the number; the budget allows for a typical "
+        "amount.",
+        evidence=(Evidence(reading="origin", value=view.species.origin or "not given", source="arithmetic"),),
+        remedies=(
+            advice("Give a geometry that was optimised with a correlated method or a functional, and say so"),
+        ),
+    )
+
+
+def _unrelaxed(case: Case) -> Iterator[Finding]:
+    question = case.question
+    if not isinstance(question, BondQuestion) or not question.cut:
+        return
+    loose = [one.name for one in case.species if origin_of(one) == "cut"]
+    if not loose:
+        return
+    yield Finding(
+        code="fragments-not-relaxed",
+        severity="note",
+        species=question.species,
+        headline="The fragments keep the shape that they had in the molecule.",
+        consequence="Relaxed fragments lie lower, so a measured bond energy is smaller than this number.",
+        evidence=(Evidence(reading="fragments", value=listed(loose)),),
+        remedies=(
+            advice("Give the optimised fragments as species of their own and name them in the question"),
+        ),
+    )
+
+
+def _ethylene(twist: str) -> Example:
+    return Example(molecules={"ethylene": Molecule(xyz=twist)})
+
+
+def _one(xyz: str, origin: str = "optimised at CCSD(T)/cc-pVTZ") -> Example:
+    return Example(molecules={"molecule": Molecule(xyz=xyz, origin=origin)})
+
+
+def _cut(xyz: str, cut: Sequence[int]) -> Example:
+    molecule = Molecule(xyz=xyz)
+    return Example(molecules={"m": molecule}, question={"kind": "bond", "species": "m", "cut": list(cut)})
+
+
+_WATER = "O 0 0 0.1173; H 0 0.7572 -0.4692; H 0 -0.7572 -0.4692"
+_WATER_IN_BOHR = "O 0 0 0.2217; H 0 1.4309 -0.8867; H 0 -1.4309 -0.8867"
+_PEROXIDE = "O 0 0.7264 -0.0555; O 0 -0.7264 -0.0555; H 0.8 0.88 0.444; H -0.8 -0.88 0.444"
+_FLAT = "C 0 0 0; C 0 0 1.339; H 0 0.929 -0.565; H 0 -0.929 -0.565; H 0 0.929 1.904; H 0 -0.929 1.904"
+_TWISTED = "C 0 0 0; C 0 0 1.339; H 0 0.929 -0.565; H 0 -0.929 -0.565; H 0.929 0 1.904; H -0.929 0 1.904"
+_DIMER = f"{_WATER}; O 0 0 3.1173; H 0 0.7572 2.5308; H 0 -0.7572 2.5308"
+
+RULES = (
+    Rule(
+        code="atoms-clash",
+        severity="stop",
+        stage="always",
+        reads=("atoms",),
+        source=PRACTICE,
+        judge=each(_clash),
+        quiet=(_one(_WATER), _one("N 0 0 0")),
+        loud=(_one("O 0 0 0; H 0 0 0.3; H 0 0.76 -0.6"),),
+    ),
+    Rule(
+        code="looks-like-bohr",
+        severity="care",
+        stage="always",
+        reads=("atoms",),
+        source="arithmetic",
+        judge=each(_bohr),
+        quiet=(_one(_WATER), _one("N 0 0 0")),
+        loud=(_one(_WATER_IN_BOHR),),
+    ),
+    Rule(
+        code="bond-stretched",
+        severity="care",
+        stage="always",
+        reads=("atoms",),
+        source=PRACTICE,
+        judge=each(_stretched),
+        quiet=(_one(_WATER), _one("N 0 0 0; N 0 0 1.3")),
+        loud=(_one("N 0 0 0; N 0 0 2.0"),),
+    ),
+    Rule(
+        code="double-bond-twisted",
+        severity="care",
+        stage="always",
+        reads=("atoms",),
+        source=PRACTICE,
+        judge=each(_twisted),
+        quiet=(_ethylene(_FLAT), _one(_PEROXIDE)),
+        loud=(_ethylene(_TWISTED),),
+    ),
+    Rule(
+        code="unbonded-pieces",
+        severity="note",
+        stage="always",
+        reads=("atoms",),
+        source="own, water dimer in cc-pVDZ",
+        judge=each(_pieces),
+        quiet=(_one(_WATER),),
+        loud=(_one(_DIMER),),
+    ),
+    Rule(
+        code="geometry-origin",
+        severity="note",
+        stage="always",
+        reads=("origin",),
+        source="arithmetic",
+        judge=each(_origin),
+        quiet=(_one(_WATER), _one("N 0 0 0", "")),
+        loud=(_one(_WATER, ""), _one(_WATER, "built from SMILES by a force field")),
+    ),
+    Rule(
+        code="fragments-not-relaxed",
+        severity="note",
+        stage="always",
+        reads=("the cut",),
+        source="arithmetic",
+        judge=_unrelaxed,
+        quiet=(Example(), _cut("N 0 0 0; N 0 0 1.1", (1, 2))),
+        loud=(_cut(_PEROXIDE, (1, 2)),),
+    ),
+)

@@ -24,7 +24,8 @@ def _contaminated(case: Case, view: SpeciesView) -> Finding | None:
         severity="stop" if bad else "care",
         species=view.name,
         rungs=tuple(name for name in case.single_reference if RUNGS[name].kind == "wave function"),
-        headline=f"The reference of {view.name} is mixed with other spin states: <S²> is {excess:.2f} too high.",
+        headline=f"The reference of {view.name} is mixed with other spin states: <S²> is {excess:.2f} "
+        "too high.",
         consequence=(
             "It is no longer the state that was asked for, and correlated rungs inherit the mixture."
             if bad
@@ -56,16 +57,22 @@ def _other_state(case: Case, view: SpeciesView) -> Finding | None:
         code="spin-state",
         severity="note" if isinstance(case.question, EnergyQuestion) or ground == 1 else "care",
         species=one.name,
-        headline=f"{one.name} ({one.formula}) is asked for as a {asked}; its ground state is expected to be a {known}.",
+        headline=f"{one.name} ({one.formula}) is asked for as a {asked}; its ground state is expected "
+        f"to be a {known}.",
         consequence="The wrong spin state shifts the number by tens to hundreds of kJ/mol.",
         evidence=(
-            Evidence(reading="multiplicity", value=float(one.multiplicity), threshold=float(ground), source=SPIN_SOURCE),
+            Evidence(
+                reading="multiplicity",
+                value=float(one.multiplicity),
+                threshold=float(ground),
+                source=SPIN_SOURCE,
+            ),
         ),
         remedies=spin_state(case, one.name, ground, f"Take {one.name} as a {known}"),
     )
 
 
-SPIN_SOURCE = "ground states of atoms: NIST Atomic Spectra Database; of small molecules: from memory; else the lowest spin"
+SPIN_SOURCE = "atoms: NIST Atomic Spectra Database; small molecules: from memory; else the lowest spin"
 
 
 def _radical(excess: float) -> Example:

@@ -1,27 +1,34 @@
 """What the number is, and whether its bar fits what was asked for."""
 
+import math
 from collections.abc import Iterator, Mapping
 from typing import Any
 
 from plumbrule_core.documents.findings import Evidence, Finding, Remedy
-from plumbrule_core.documents.questions import EnergyQuestion
+from plumbrule_core.documents.questions import BondQuestion, EnergyQuestion
 from plumbrule_core.judgement.case import Case, Standing
 from plumbrule_core.judgement.rules.base import Rule
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import add_rungs, advice, change, larger_basis
 from plumbrule_core.judgement.wording import in_unit
 
-SCALES = "size of zero-point energies in reactions and bonds: 3 to 30 kcal/mol for ordinary molecules (from memory)"
+SCALES = "zero-point energies of reactions and bonds of ordinary molecules, 3 to 30 kcal/mol: from memory"
 
 
 def _too_wide(case: Case) -> Iterator[Finding]:
     standing, question = case.standing, case.question
-    if standing is None or question is None or standing.uncertainty is None or standing.uncertainty <= question.within:
+    if (
+        standing is None
+        or question is None
+        or standing.uncertainty is None
+        or standing.uncertainty <= question.within
+    ):
         return
     yield Finding(
         code="bar-exceeds-target",
         severity="care",
-        headline=f"The bar of ±{in_unit(standing.uncertainty, case.unit)} is wider than the {question.within:g} "
+        headline=f"The bar of ±{in_unit(standing.uncertainty, case.unit)} is wider than the "
+        f"{question.within:g} "
         f"{case.unit} that are needed.",
         consequence="A value that happens to agree with experiment proves nothing at this width. "
         f"The largest cause is {standing.largest_cause}.",
@@ -40,8 +47,14 @@ def _narrower(case: Case, standing: Standing) -> tuple[Remedy, ...]:
         "beyond the top rung": add_rungs(case, ("CCSD", "CCSD(T)"), "Add CCSD(T) and run"),
         "geometry": (advice("Give geometries that were optimised with a correlated method and say so"),),
     }.get(standing.largest_cause, ())
-    settle = round(standing.uncertainty or 0.0, 1)
+    settle = _rounded_up(standing.uncertainty or 0.0)
     return (*first, change(f"Settle for {settle:g} {case.unit}", "question.within", settle))
+
+
+def _rounded_up(size: float) -> float:
+    """Up to two digits, so that the bar fits."""
+    step = 10.0 ** (math.floor(math.log10(size)) - 1)
+    return round(math.ceil(size / step) * step, 10)
 
 
 def _total(case: Case) -> Iterator[Finding]:
@@ -52,7 +65,8 @@ def _total(case: Case) -> Iterator[Finding]:
         severity="note",
         species=case.species[0].name if case.species else "",
         headline="A total energy has no useful bar.",
-        consequence="It lies far above the exact energy in every basis set; most of that cancels in differences at one "
+        consequence="It lies far above the exact energy in every basis set; most of that cancels in "
+        "differences at one "
         "recipe. Ask for a reaction, a bond or a gap to get a bar.",
     )
 
@@ -60,11 +74,13 @@ def _total(case: Case) -> Iterator[Finding]:
 def _electronic(case: Case) -> Iterator[Finding]:
     if case.question is None or isinstance(case.question, EnergyQuestion):
         return
+    dissociation = " (Dₑ)" if isinstance(case.question, BondQuestion) else ""
     yield Finding(
         code="electronic-energy",
         severity="note",
-        headline="This is an electronic energy (Dₑ), without zero-point energy and heat.",
-        consequence="Do not compare it with a measured enthalpy or D₀ before zero-point energy is added: that is "
+        headline=f"This is an electronic energy{dissociation}, without zero-point energy and heat.",
+        consequence="Do not compare it with a measured value at 0 K or above before zero-point energy "
+        "is added: that is "
         "3 to 30 kcal/mol (13 to 130 kJ/mol), never negligible, and not part of the bar.",
         evidence=(Evidence(reading="zero-point energy", value="not included", source=SCALES),),
         remedies=(advice("Take the zero-point energy from measured or computed vibrations and add it"),),

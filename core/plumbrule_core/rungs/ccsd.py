@@ -6,6 +6,17 @@ from plumbrule_core.rungs.correlated.reference import NO_PAIRS, correlated_used,
 from plumbrule_core.rungs.correlated.solvers import coupled_cluster, integrals
 from plumbrule_core.rungs.costs import iterated_forecast
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
+from plumbrule_core.rungs.published_systems import (
+    AMIDOGEN,
+    BORANE_CATION,
+    FLUORIDE_ALL,
+    FLUORIDE_FROZEN,
+    HELIUMS,
+    HYDROGEN,
+    WATER_DIFFUSE,
+    WATER_OLSEN,
+    WATER_STRETCHED,
+)
 
 
 class CCSD:
@@ -18,7 +29,17 @@ class CCSD:
     rank = 3
     single_reference = True
     citation = "G. D. Purvis and R. J. Bartlett, J. Chem. Phys. 76, 1910 (1982)"
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        WATER_OLSEN.gives(-76.238116),
+        WATER_STRETCHED.gives(-75.929633),
+        HYDROGEN.gives(-1.137276),
+        FLUORIDE_FROZEN.gives(-100.0194112692 - 0.2068152041),
+        FLUORIDE_ALL.gives(-100.0194112692 - 0.208743643),
+        WATER_DIFFUSE.gives(-76.0413815332 - 0.2271733453),
+        AMIDOGEN.gives(-55.5751380525 - 0.1716495276),
+        BORANE_CATION.gives(-25.9451384287 - 0.0811710557),
+        HELIUMS.gives(3 * -2.8875948311),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """Transformation and iterations."""

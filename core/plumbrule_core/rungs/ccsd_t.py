@@ -6,6 +6,16 @@ from plumbrule_core.rungs.correlated.reference import NO_PAIRS, correlated_used,
 from plumbrule_core.rungs.correlated.solvers import integrals
 from plumbrule_core.rungs.costs import triples_forecast
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
+from plumbrule_core.rungs.published_systems import (
+    AMIDOGEN,
+    BORANE_CATION,
+    FLUORIDE_ALL,
+    FLUORIDE_FROZEN,
+    HYDROGEN,
+    WATER_DIFFUSE,
+    WATER_OLSEN,
+    WATER_STRETCHED,
+)
 
 
 class CCSDT:
@@ -17,8 +27,19 @@ class CCSDT:
     needs: tuple[str, ...] = ("HF", "CCSD")
     rank = 4
     single_reference = True
-    citation = "K. Raghavachari, G. W. Trucks, J. A. Pople and M. Head-Gordon, Chem. Phys. Lett. 157, 479 (1989)"
-    published: tuple[Published, ...] = ()
+    citation = (
+        "K. Raghavachari, G. W. Trucks, J. A. Pople and M. Head-Gordon, Chem. Phys. Lett. 157, 479 (1989)"
+    )
+    published: tuple[Published, ...] = (
+        WATER_OLSEN.gives(-76.241202),
+        WATER_STRETCHED.gives(-75.955485),
+        HYDROGEN.gives(-1.137276),
+        FLUORIDE_FROZEN.gives(-100.0194112692 - 0.2068152041 - 0.0019205007),
+        FLUORIDE_ALL.gives(-100.0194112692 - 0.208743643 - 0.0019363897),
+        WATER_DIFFUSE.gives(-76.0413815332 - 0.2271733453 - 0.00521238),
+        AMIDOGEN.gives(-55.5751380525 - 0.1716495276 - 0.00381116),
+        BORANE_CATION.gives(-25.9451384287 - 0.0811710557 - 0.00060401),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """The triples alone."""
@@ -36,7 +57,8 @@ class CCSDT:
             raise PlumbruleError("CCSD has not been computed, and (T) stands on its amplitudes")
         if not solver.converged:
             raise PlumbruleError(
-                f"CCSD did not converge for {given.spec.species.name}, so (T) on its amplitudes would mean nothing"
+                f"CCSD did not converge for {given.spec.species.name}, so (T) on its amplitudes would mean "
+                "nothing"
             )
         tell.progress(0.0, "triples")
         bench.triples = float(solver.ccsd_t(eris=integrals(given)))

@@ -9,6 +9,18 @@ from plumbrule_core.documents.plan import Forecast, Machine, TaskSpec
 from plumbrule_core.rungs.costs import field_forecast
 from plumbrule_core.rungs.molecule import basis_of, empty_mean_field, reference_kind
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
+from plumbrule_core.rungs.published_systems import (
+    AMIDOGEN,
+    BORANE_CATION,
+    FLUORIDE_ALL,
+    HYDROGEN,
+    MINIMAL,
+    OXYGEN,
+    WATER_DIFFUSE,
+    WATER_OLSEN,
+    WATER_SIX_D,
+    WATER_STRETCHED,
+)
 from plumbrule_core.rungs.scf.solve import guess_words, solve
 from plumbrule_core.rungs.scf.stored import Solved
 
@@ -22,8 +34,19 @@ class HartreeFock:
     needs: tuple[str, ...] = ()
     rank = 0
     single_reference = True
-    citation = "C. C. J. Roothaan, Rev. Mod. Phys. 23, 69 (1951); J. A. Pople and R. K. Nesbet, J. Chem. Phys. 22, 571 (1954)"
-    published: tuple[Published, ...] = ()
+    citation = "C. C. J. Roothaan, Rev. Mod. Phys. 23, 69 (1951)"
+    published: tuple[Published, ...] = (
+        WATER_OLSEN.gives(-76.024039),
+        WATER_STRETCHED.gives(-75.587711),
+        HYDROGEN.gives(-1.116714),
+        FLUORIDE_ALL.gives(-100.0194112692),
+        WATER_DIFFUSE.gives(-76.0413815332),
+        AMIDOGEN.gives(-55.5751380525),
+        BORANE_CATION.gives(-25.9451384287),
+        *MINIMAL,
+        WATER_SIX_D.gives(-76.0231586941),
+        OXYGEN.gives(-149.671355172),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """Fock builds, the guesses of an open shell and the stability analysis included."""
@@ -49,7 +72,7 @@ class HartreeFock:
 
 
 def core_orbitals(spec: TaskSpec, mean_field: Any) -> int:
-    """Frozen core orbitals; a core that holds fewer electrons than usual (a bare ion) is frozen as far as it is filled."""
+    """Frozen core orbitals, no more than are filled (a bare ion may hold fewer than its element)."""
     if spec.settings.core == "all":
         return 0
     symbols = [atom.symbol for atom in spec.species.atoms]

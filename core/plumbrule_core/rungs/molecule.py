@@ -42,8 +42,8 @@ def build_molecule(spec: TaskSpec, memory_mb: float) -> Any:
     molecule.max_memory = memory_mb
     if molecule.ecp and settings.relativity == "X2C":
         raise PlumbruleError(
-            f"{settings.basis} replaces inner electrons of {', '.join(sorted(molecule.ecp))} by a potential that already "
-            "holds relativity, so X2C cannot be added: choose no relativity, or an all-electron basis"
+            f"{settings.basis} replaces inner electrons of {', '.join(sorted(molecule.ecp))} by a potential "
+            "that already holds relativity, so X2C cannot be added: choose no relativity, or an all-electron basis"
         )
     return molecule.build()
 

@@ -14,6 +14,16 @@ from plumbrule_core.rungs.correlated.reference import (
 from plumbrule_core.rungs.correlated.solvers import perturbation
 from plumbrule_core.rungs.costs import perturbation_forecast
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
+from plumbrule_core.rungs.published_systems import (
+    AMIDOGEN,
+    BORANE_CATION,
+    FLUORIDE_ALL,
+    FLUORIDE_FROZEN,
+    HYDROGEN,
+    WATER_DIFFUSE,
+    WATER_OLSEN,
+    WATER_STRETCHED,
+)
 
 
 class MP2:
@@ -26,7 +36,16 @@ class MP2:
     rank = 1
     single_reference = True
     citation = "C. Moller and M. S. Plesset, Phys. Rev. 46, 618 (1934)"
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        WATER_OLSEN.gives(-76.228729),
+        WATER_STRETCHED.gives(-75.896935),
+        HYDROGEN.gives(-1.116714 - 0.013158),
+        FLUORIDE_FROZEN.gives(-100.0194112692 - 0.201627516796),
+        FLUORIDE_ALL.gives(-100.0194112692 - 0.20378191195),
+        WATER_DIFFUSE.gives(-76.0413815332 - 0.2194081478),
+        AMIDOGEN.gives(-55.5751380525 - 0.152427554),
+        BORANE_CATION.gives(-25.9451384287 - 0.0584235138),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """The transformation of the integrals with two occupied and two virtual indices."""
@@ -36,7 +55,8 @@ class MP2:
         """The energy; leaves the MP2 object with its amplitudes on the bench."""
         bench = given.bench
         reference = correlated_reference(bench)
-        correlation, notes = 0.0, (NO_PAIRS,)
+        correlation = 0.0
+        notes: tuple[str, ...] = (NO_PAIRS,)
         bench.perturbation = None
         if has_pairs(bench):
             tell.progress(0.0, "integrals and amplitudes")

@@ -155,4 +155,4 @@ class Rung(Protocol):
         """Time, memory and disk of this rung alone, once its needs are there."""
 
     def compute(self, given: Given, tell: Tell) -> Outcome:
-        """Compute, carrying on from the shelf where it can; raises PlumbruleError with a sentence, or Stopped."""
+        """Compute, carrying on from the shelf where it can; raises PlumbruleError or Stopped."""

@@ -5,15 +5,15 @@
 | `s2` | HF | | <S^2> of the reference |
 | `s2_ideal` | HF | | S(S+1) of the multiplicity |
 | `s2_excess` | HF | | `s2` - `s2_ideal` |
-| `stable` | HF | | the solution is a minimum in its own kind (after following), true or false |
-| `stable_external` | HF | | restricted solutions of closed shells alone: no unrestricted solution starts here |
-| `instability_depth` | HF | hartree | how far the unrestricted solution lies below the restricted one; 0 where none does |
-| `uhf_natural_occupations` | HF | electrons | all natural occupations of the unrestricted solution, largest first |
-| `uhf_fractional` | HF | electrons | the largest min(n, 2 - n) among them, singly occupied orbitals left out: 0 paired, 1 diradical |
-| `homo_lumo_gap` | HF | eV | lowest virtual minus highest occupied orbital energy, the smaller of the two spins |
+| `stable` | HF | | the solution is a minimum of its kind (after following) |
+| `stable_external` | HF | | closed-shell RHF alone: no unrestricted solution starts here |
+| `instability_depth` | HF | hartree | how far UHF lies below RHF; 0 where it does not |
+| `uhf_natural_occupations` | HF | electrons | natural occupations of UHF, largest first |
+| `uhf_fractional` | HF | electrons | their largest min(n, 2 - n), single ones left out: 1 is a diradical |
+| `homo_lumo_gap` | HF | eV | lowest virtual minus highest occupied, the smaller of two spins |
 | `overlap_condition` | HF | | smallest eigenvalue of the overlap matrix of the basis |
 | `removed_functions` | HF | functions | combinations of basis functions removed as linearly dependent |
-| `natural_occupations` | MP2 | electrons | unrelaxed MP2 natural occupations of the correlated orbitals, largest first |
+| `natural_occupations` | MP2 | electrons | unrelaxed natural occupations, core left out, largest first |
 | `M` | MP2 | | (2 - n_DONO + sum |n_SOMO - 1| + n_UNO) / 2 from the MP2 occupations |
 | `mp2_largest_t2` | MP2 | | largest absolute first-order doubles amplitude |
 | `c0_squared` | CISD | | weight of the reference determinant |
@@ -43,5 +43,7 @@ READINGS: tuple[Family, ...] = (REFERENCE, OCCUPATIONS, CONFIGURATION, AMPLITUDE
 
 
 def take(rung: str, bench: Bench, spec: TaskSpec) -> tuple[Reading, ...]:
-    """What can be read once this rung has been computed on this bench; the worker calls it after each rung."""
-    return tuple(reading for family in READINGS if family.after == rung for reading in family.measure(bench, spec))
+    """What can be read once this rung has been computed on this bench; called after each rung."""
+    return tuple(
+        reading for family in READINGS if family.after == rung for reading in family.measure(bench, spec)
+    )

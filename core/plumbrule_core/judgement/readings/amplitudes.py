@@ -1,16 +1,17 @@
 """After CCSD: how large the amplitudes are.
 
-T1, closed shells: Frobenius norm of the spatial singles amplitudes over the square root of the number of correlated
-electrons (T. J. Lee and P. R. Taylor, Int. J. Quantum Chem. Symp. 23, 199 (1989)). Unrestricted: the root of
-(|t1 alpha|^2 + |t1 beta|^2) / (2 N), which is the closed-shell value where the spins agree (after D. Jayatilaka and
-T. J. Lee, J. Chem. Phys. 98, 9734 (1993), who derive that normalisation for open shells).
+T1, closed shells: Frobenius norm of the spatial singles amplitudes over the square root of the number of
+correlated electrons (T. J. Lee and P. R. Taylor, Int. J. Quantum Chem. Symp. 23, 199 (1989)). Unrestricted:
+the root of (|t1 alpha|^2 + |t1 beta|^2) / (2 N), which is the closed-shell value where the spins agree (after
+D. Jayatilaka and T. J. Lee, J. Chem. Phys. 98, 9734 (1993), who derive that normalisation for open shells).
 
-D1: largest singular value of the singles amplitudes (C. L. Janssen and I. M. B. Nielsen, Chem. Phys. Lett. 290, 423
-(1998)); unrestricted: the larger of the two spins', which is that of the whole spin-orbital matrix and the closed-shell
-value where the spins agree.
+D1: largest singular value of the singles amplitudes (C. L. Janssen and I. M. B. Nielsen, Chem. Phys. Lett.
+290, 423 (1998)); unrestricted: the larger of the two spins', which is that of the whole spin-orbital matrix
+and the closed-shell value where the spins agree.
 
-D2: closed shells alone, as it was defined: the largest 2-norm of the doubles amplitudes seen as a matrix from one
-occupied (or virtual) index to the three others (I. M. B. Nielsen and C. L. Janssen, Chem. Phys. Lett. 310, 568 (1999)).
+D2: closed shells alone, as it was defined: the largest 2-norm of the doubles amplitudes seen as a matrix from
+one occupied (or virtual) index to the three others (I. M. B. Nielsen and C. L. Janssen, Chem. Phys. Lett.
+310, 568 (1999)).
 """
 
 from typing import Any

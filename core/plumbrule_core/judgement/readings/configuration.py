@@ -14,7 +14,11 @@ def measure(bench: Bench, spec: TaskSpec) -> tuple[Reading, ...]:
     if solver is None or not solver.converged:
         return ()
     vector = solver.ci
-    norm = np.dot(vector, vector) if solver._dot is None else solver._dot(vector, vector, solver.nmo, solver.nocc)
+    norm = (
+        np.dot(vector, vector)
+        if solver._dot is None
+        else solver._dot(vector, vector, solver.nmo, solver.nocc)
+    )
     return (Reading(name="c0_squared", value=float(vector[0] ** 2 / norm)),)
 
 

@@ -1,7 +1,8 @@
 """After MP2: natural occupations of the unrelaxed density, and the M diagnostic drawn from them.
 
-M: O. Tishchenko, J. Zheng and D. G. Truhlar, J. Chem. Theory Comput. 4, 1208 (2008), who take the occupations from a
-multiconfigurational wave function; here they come from MP2, which exaggerates where orbitals lie close.
+M: O. Tishchenko, J. Zheng and D. G. Truhlar, J. Chem. Theory Comput. 4, 1208 (2008), who take the occupations
+from a multiconfigurational wave function; here they come from MP2, which exaggerates where orbitals lie
+close.
 """
 
 from typing import Any
@@ -16,7 +17,7 @@ from plumbrule_core.rungs.protocol import Bench
 
 
 def measure(bench: Bench, spec: TaskSpec) -> tuple[Reading, ...]:
-    """Occupations of the correlated orbitals, M, and the largest amplitude; nothing where no pair is correlated."""
+    """Occupations, M and the largest amplitude; nothing where no pair is correlated."""
     solver = bench.perturbation
     if solver is None:
         return ()
@@ -31,7 +32,7 @@ def measure(bench: Bench, spec: TaskSpec) -> tuple[Reading, ...]:
 
 
 def natural_occupations(solver: Any, reference: Any, frozen: int) -> tuple[float, ...]:
-    """Eigenvalues of the spin-summed density, largest first; the frozen core, always the fullest, is left out."""
+    """Eigenvalues of the spin-summed density, largest first; the fullest, the frozen core, are left out."""
     density = solver.make_rdm1()
     if isinstance(density, tuple):
         alpha, beta = np.asarray(reference.mo_coeff)
@@ -43,8 +44,8 @@ def natural_occupations(solver: Any, reference: Any, frozen: int) -> tuple[float
 def m_diagnostic(occupations: tuple[float, ...], doubly: int, singly: int) -> float | None:
     """(2 - n_DONO + sum |n_SOMO - 1| + n_UNO) / 2; None where a kind of orbital that it needs is lacking.
 
-    DONO is the doubly occupied orbital whose occupation departs most from 2, UNO the empty one that departs most
-    from 0.
+    DONO is the doubly occupied orbital whose occupation departs most from 2, UNO the empty one that departs
+    most from 0.
     """
     pairs, singles, empty = (
         occupations[:doubly],

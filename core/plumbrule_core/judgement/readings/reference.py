@@ -57,7 +57,9 @@ def _stability(field: Any, found: Stability | None) -> tuple[Reading, ...]:
 
 def _gap(field: Any) -> tuple[Reading, ...]:
     gaps = []
-    for energies, occupation in zip(*(np.atleast_2d(x) for x in (field.mo_energy, field.mo_occ)), strict=True):
+    for energies, occupation in zip(
+        *(np.atleast_2d(x) for x in (field.mo_energy, field.mo_occ)), strict=True
+    ):
         filled, empty = energies[occupation > 0], energies[occupation == 0]
         if filled.size and empty.size:
             gaps.append(float(empty.min() - filled.max()))

@@ -20,6 +20,6 @@ def measure(bench: Bench, spec: TaskSpec) -> tuple[Reading, ...]:
 TRIPLES = Family(
     after="CCSD(T)",
     names=("triples", "share_of_triples"),
-    citation="K. Raghavachari, G. W. Trucks, J. A. Pople and M. Head-Gordon, Chem. Phys. Lett. 157, 479 (1989)",
+    citation="K. Raghavachari et al., Chem. Phys. Lett. 157, 479 (1989)",
     measure=measure,
 )

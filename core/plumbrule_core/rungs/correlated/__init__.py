@@ -1,1 +1,1 @@
-"""What the correlated rungs share: the reference, the integrals, the amplitudes' checkpoints and their extrapolation."""
+"""What the correlated rungs share: reference, integrals, checkpoints of amplitudes, extrapolation."""

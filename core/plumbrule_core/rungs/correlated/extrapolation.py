@@ -1,8 +1,8 @@
 """Direct inversion in the iterative subspace, with a memory that can be put on the shelf.
 
 P. Pulay, Chem. Phys. Lett. 73, 393 (1980); for coupled cluster G. E. Scuseria, T. J. Lee and H. F. Schaefer,
-Chem. Phys. Lett. 130, 236 (1986). Kept apart from the library's because a run that is carried on must have the same
-memory as one that was never interrupted, else it needs more iterations.
+Chem. Phys. Lett. 130, 236 (1986). Kept apart from the library's because a run that is carried on must have
+the same memory as one that was never interrupted, else it needs more iterations.
 """
 
 from collections.abc import Mapping
@@ -66,5 +66,4 @@ def _weights(errors: list[Vector]) -> Vector:
     system[:-1, :-1] = products / max(products.diagonal().max(), np.finfo(float).tiny)
     wanted = np.zeros(count + 1)
     wanted[-1] = 1
-    solution: Vector = np.linalg.lstsq(system, wanted, rcond=1e-14)[0]
-    return solution[:-1]
+    return np.asarray(np.linalg.lstsq(system, wanted, rcond=1e-14)[0][:-1], dtype=np.float64)

@@ -18,7 +18,7 @@ MOST_ITERATIONS = 100
 
 @dataclass(slots=True, kw_only=True)
 class Iterations:
-    """Stands in for the library's extrapolation step, the one place that sees every iteration with its residual."""
+    """Stands in for the library's extrapolation, the one step that sees each iteration's residual."""
 
     solver: Any
     integrals: Any
@@ -31,8 +31,8 @@ class Iterations:
         """One iteration ends: extrapolate, save, tell (which may raise Stopped)."""
         if not np.isfinite(residual):
             raise PlumbruleError(
-                f"the CCSD amplitudes ran away in iteration {self.done + 1}: one determinant is no start for this "
-                "molecule, or the geometry is wrong"
+                f"the CCSD amplitudes ran away in iteration {self.done + 1}: one determinant is no start for "
+                "this molecule, or the geometry is wrong"
             )
         vector = self.extrapolation(self.solver.amplitudes_to_vector(t1, t2))
         t1, t2 = self.solver.vector_to_amplitudes(vector)
@@ -52,7 +52,9 @@ class Iterations:
         return {"orbitals": np.asarray(self.solver.mo_coeff), "iterations": np.array(self.done)}
 
 
-def iterate(given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mapping[str, np.ndarray] | None) -> Iterations:
+def iterate(
+    given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mapping[str, np.ndarray] | None
+) -> Iterations:
     """Run the solver to its end, from the checkpoint where there is one that fits; raises Stopped, PlumbruleError."""
     settings = given.spec.settings
     solver.conv_tol, solver.conv_tol_normt = settings.cc_tolerance, settings.cc_residual
@@ -65,7 +67,12 @@ def iterate(given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mappi
         space = space_for(stored["amplitudes"].size, given.memory_mb)
         extrapolation, done = Extrapolation.carried_on(stored, space), int(stored["iterations"])
     iterations = Iterations(
-        solver=solver, integrals=integrals, shelf=given.shelf, tell=tell, extrapolation=extrapolation, done=done
+        solver=solver,
+        integrals=integrals,
+        shelf=given.shelf,
+        tell=tell,
+        extrapolation=extrapolation,
+        done=done,
     )
     solver.run_diis = iterations
     t1, t2 = solver.vector_to_amplitudes(extrapolation.previous)
@@ -77,8 +84,8 @@ def iterate(given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mappi
 def usable(given: Given) -> Mapping[str, np.ndarray] | None:
     """The checkpoint, where its orbitals are those on the bench or can be put there; else None.
 
-    Amplitudes mean nothing without the orbitals they were made in. Where the orbitals on the bench describe the same
-    determinant turned differently, the stored ones take their place.
+    Amplitudes mean nothing without the orbitals they were made in. Where the orbitals on the bench describe
+    the same determinant turned differently, the stored ones take their place.
     """
     stored = given.shelf.load()
     if stored is None or not {"amplitudes", "vectors", "errors", "orbitals", "iterations"} <= stored.keys():
@@ -86,7 +93,9 @@ def usable(given: Given) -> Mapping[str, np.ndarray] | None:
     reference, orbitals = correlated_reference(given.bench), stored["orbitals"]
     if np.array_equal(orbitals, reference.mo_coeff):
         return stored
-    if orbitals.shape != np.shape(reference.mo_coeff) or not _same_determinant(reference, orbitals, given.bench.frozen):
+    if orbitals.shape != np.shape(reference.mo_coeff) or not _same_determinant(
+        reference, orbitals, given.bench.frozen
+    ):
         return None
     _adopt(given.bench, orbitals)
     return stored
@@ -95,7 +104,9 @@ def usable(given: Given) -> Mapping[str, np.ndarray] | None:
 def _same_determinant(reference: Any, orbitals: Any, frozen: int) -> bool:
     overlap = reference.get_ovlp()
     unrestricted = reference.istype("UHF")
-    pairs = zip(orbitals, reference.mo_coeff, strict=True) if unrestricted else [(orbitals, reference.mo_coeff)]
+    pairs = (
+        zip(orbitals, reference.mo_coeff, strict=True) if unrestricted else [(orbitals, reference.mo_coeff)]
+    )
     for (stored, present), occupation in zip(pairs, np.atleast_2d(reference.mo_occ), strict=True):
         filled = np.flatnonzero(occupation > 0)
         for block in (filled[:frozen], filled):

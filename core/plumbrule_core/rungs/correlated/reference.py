@@ -1,9 +1,9 @@
 """The mean field that correlation starts from, and whether there is anything to correlate.
 
-An ROHF determinant is taken over in semicanonical orbitals: alpha and beta Fock matrices are made diagonal within
-the frozen, occupied and virtual orbitals. Perturbation theory on ROHF is defined in them (P. J. Knowles et al.,
-Chem. Phys. Lett. 186, 130 (1991)), (T) too (J. D. Watts, J. Gauss and R. J. Bartlett, J. Chem. Phys. 98, 8718
-(1993)), and CCSD and CISD energies do not depend on the choice.
+An ROHF determinant is taken over in semicanonical orbitals: alpha and beta Fock matrices are made diagonal
+within the frozen, occupied and virtual orbitals. Perturbation theory on ROHF is defined in them (P. J.
+Knowles et al., Chem. Phys. Lett. 186, 130 (1991)), (T) too (J. D. Watts, J. Gauss and R. J. Bartlett, J.
+Chem. Phys. 98, 8718 (1993)), and CCSD and CISD energies do not depend on the choice.
 """
 
 from typing import Any

@@ -1,4 +1,4 @@
-"""The library's correlated objects on our reference, silent and with our limits, and the integrals they share."""
+"""The library's correlated objects on our reference, and the integrals that they share."""
 
 from typing import Any
 
@@ -46,7 +46,9 @@ def _made(given: Given, plain: Any, fitted: Any) -> Any:
 
     lib.num_threads(given.threads)
     fitting = given.spec.settings.density_fitting
-    solver = (fitted if fitting else plain)(correlated_reference(given.bench), frozen=given.bench.frozen or None)
+    solver = (fitted if fitting else plain)(
+        correlated_reference(given.bench), frozen=given.bench.frozen or None
+    )
     solver.verbose, solver.max_memory = 0, given.memory_mb
     if fitting:
         solver.with_df = fitting_of(given)

@@ -1,1 +1,1 @@
-"""The self-consistent field: guesses, a ladder of measures, stability, checkpoints. HF and the functionals share it."""
+"""The self-consistent field of HF and the functionals: guesses, measures, stability, checkpoints."""

@@ -1,4 +1,4 @@
-"""Starting guesses: one for ordinary closed shells, several where different starts are known to end differently."""
+"""Starting guesses: one for ordinary closed shells, several where starts are known to end differently."""
 
 from collections.abc import Iterable
 from dataclasses import dataclass
@@ -41,7 +41,12 @@ def search(mean_field: Any, watch: Watch) -> Start:
     found: dict[str, tuple[bool, float, Any]] = {}
     for guess, words in GUESSES.items():
         watch.begin(f"guess: {words}")
-        run(mean_field, Measure(name=guess, cycles=40), watch, mean_field.get_init_guess(mean_field.mol, guess))
+        run(
+            mean_field,
+            Measure(name=guess, cycles=40),
+            watch,
+            mean_field.get_init_guess(mean_field.mol, guess),
+        )
         found[guess] = (mean_field.converged, float(mean_field.e_tot), mean_field.make_rdm1())
     mean_field.conv_tol, mean_field.conv_tol_grad = tight
     winner = min(found, key=lambda guess: (not found[guess][0], found[guess][1]))

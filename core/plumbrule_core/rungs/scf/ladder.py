@@ -63,9 +63,9 @@ def converge(mean_field: Any, first_guess: str, watch: Watch, name: str, start: 
             best = watch.best
     course = course_of(watch.energies)
     raise PlumbruleError(
-        f"Hartree-Fock for {name} did not converge in {watch.iterations} iterations with any measure, second order "
-        f"included: {COURSES[course]} ({course}). Nothing that builds on it was computed. Look at the geometry, "
-        "the charge and the number of unpaired electrons first, then try a smaller basis"
+        f"the self-consistent field of {name} did not converge in {watch.iterations} iterations with any "
+        f"measure, second order included: {COURSES[course]} ({course}). Nothing that builds on it was computed. "
+        "Look at the geometry, the charge and the unpaired electrons first, then try a smaller basis"
     )
 
 

@@ -48,7 +48,7 @@ def _start(mean_field: Any, given: Given, watch: Watch) -> Start:
 
 
 def _resumed(stored: Any, mean_field: Any, watch: Watch) -> Start | None:
-    """Carry on from the last iteration's orbitals; a search among guesses starts again, to end the same way."""
+    """Carry on from the last orbitals; a search among guesses starts again, to end the same way."""
     if not fits(stored, mean_field) or str(stored.get("stage", "guess")).startswith("guess"):
         return None
     watch.iterations = int(stored["iterations"])

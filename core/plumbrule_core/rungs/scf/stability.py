@@ -1,4 +1,4 @@
-"""Is the solution a minimum? Stability analysis, following, and the depth of what lies below a restricted one.
+"""Is the solution a minimum? Stability, following, and the depth of what lies below a restricted one.
 
 Methods: R. Seeger and J. A. Pople, J. Chem. Phys. 66, 3045 (1977); R. Bauernschmitt and R. Ahlrichs,
 J. Chem. Phys. 104, 9047 (1996).
@@ -17,8 +17,8 @@ from plumbrule_core.rungs.scf.watch import Watch
 from plumbrule_core.units import KJ_PER_HARTREE
 
 UNSTABLE = -1e-4
-"""Lowest eigenvalue of the orbital Hessian (hartree) below which a solution is called unstable: small negative
-values are rotations that cost nothing, as those of a p shell (common practice, no source)."""
+"""Lowest eigenvalue of the orbital Hessian (hartree) below which a solution is called unstable: small
+negative values are rotations that cost nothing, as those of a p shell (common practice, no source)."""
 LOWER = 1e-6
 """A followed solution counts where it lies lower by at least this many hartree."""
 MOST_FOLLOWED = 4
@@ -129,7 +129,12 @@ def _lowest(times_hessian: Callable[[Vector], Vector], diagonal: Vector) -> Mode
         return np.asarray(residual / gap)
 
     _, values, vectors = lib.davidson1(
-        lambda xs: [times_hessian(x) for x in xs], _starts(diagonal), precondition, tol=1e-5, max_cycle=40, verbose=0
+        lambda xs: [times_hessian(x) for x in xs],
+        _starts(diagonal),
+        precondition,
+        tol=1e-5,
+        max_cycle=40,
+        verbose=0,
     )
     return Mode(float(values[0]), np.asarray(vectors[0]))
 
@@ -157,9 +162,7 @@ def _moved(mean_field: Any, direction: Vector) -> Any:
 
     cut = int(uniq_var_indices(mean_field.mo_occ[0]).sum())
     parts = (direction[:cut], direction[cut:])
-    return np.array(
-        [_rotated(mean_field.mo_coeff[s], mean_field.mo_occ[s], STEP * parts[s]) for s in (0, 1)]
-    )
+    return np.array([_rotated(mean_field.mo_coeff[s], mean_field.mo_occ[s], STEP * parts[s]) for s in (0, 1)])
 
 
 def _rotated(orbitals: Any, occupation: Any, amounts: Vector) -> Any:
@@ -188,7 +191,9 @@ def _paired(mean_field: Any) -> tuple[float, ...]:
 
 
 def _kept(mean_field: Any) -> dict[str, Any]:
-    return {name: getattr(mean_field, name) for name in ("converged", "e_tot", "mo_energy", "mo_coeff", "mo_occ")}
+    return {
+        name: getattr(mean_field, name) for name in ("converged", "e_tot", "mo_energy", "mo_coeff", "mo_occ")
+    }
 
 
 def _put_back(mean_field: Any, kept: dict[str, Any]) -> None:

@@ -1,4 +1,4 @@
-"""The field's checkpoints: orbitals of each iteration, and the finished solution with what was measured on it."""
+"""The field's checkpoints: the finished solution, with what was measured on it."""
 
 from collections.abc import Mapping
 from dataclasses import dataclass
@@ -65,7 +65,11 @@ def finished(stored: Mapping[str, np.ndarray], mean_field: Any) -> tuple[Solved,
         natural_occupations=tuple(float(n) for n in stored["natural_occupations"]) or None,
     )
     return Solved(
-        iterations=int(stored["iterations"]), guess=guess, measure=measure, stability=stability, notes=tuple(notes)
+        iterations=int(stored["iterations"]),
+        guess=guess,
+        measure=measure,
+        stability=stability,
+        notes=tuple(notes),
     ), gradient
 
 

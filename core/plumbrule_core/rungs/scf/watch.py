@@ -1,4 +1,4 @@
-"""What looks on while the field converges: it keeps the orbitals, tells the iterations, and labels the failures."""
+"""What looks on while the field converges: keeps orbitals, tells iterations, labels failures."""
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field

@@ -18,6 +18,7 @@ Context = dict[str, Any]
 
 FILTERS: Mapping[str, Callable[..., str]] = {
     "energy": words.energy,
+    "difference": words.difference,
     "hartree": words.hartree,
     "reading": words.reading,
     "duration": words.duration,

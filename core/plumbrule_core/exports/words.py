@@ -43,9 +43,14 @@ READING_WORDS: Mapping[str, str] = {
 }
 
 
+def difference(value: float, unit: str) -> str:
+    """An energy difference with the digits of its unit, for a column that names the unit; a true minus sign."""
+    return minus(f"{value:.{PLACES[unit]}f}")
+
+
 def energy(value: float, unit: str) -> str:
-    """An energy difference with the digits of its unit, as `-40.4 kJ/mol`; a true minus sign."""
-    return f"{minus(f'{value:.{PLACES[unit]}f}')} {unit}"
+    """An energy difference with its unit, as `−40.4 kJ/mol`."""
+    return f"{difference(value, unit)} {unit}"
 
 
 def answer(value: float, uncertainty: float | None, unit: str) -> str:

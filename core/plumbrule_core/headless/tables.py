@@ -72,7 +72,10 @@ def _answer(record: Record) -> str:
 
 def _verdict(record: Record) -> str:
     verdict = record.judgement.verdict
-    return f"verdict: {verdict.level}" + (f": {verdict.headline}" if verdict.headline else "")
+    said = " ".join(verdict.reasons) or verdict.headline
+    return textwrap.fill(
+        f"verdict: {verdict.level}{f': {said}' if said else ''}", WIDTH, subsequent_indent="  "
+    )
 
 
 def _finding(severity: str, headline: str, consequence: str) -> str:

@@ -2,7 +2,7 @@
 
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QGuiApplication, QResizeEvent
-from PySide6.QtWidgets import QBoxLayout, QFrame, QHBoxLayout, QPushButton, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QBoxLayout, QHBoxLayout, QPushButton, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Judgement, Remedy
@@ -15,6 +15,7 @@ from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.state.difference import differences
 from plumbrule_desktop.state.progress import ANSWERED
 from plumbrule_desktop.widgets.card import Card, label
+from plumbrule_desktop.widgets.scrolling import scroll_down
 
 NARROW = 900
 """Below this width, in points, the findings stand under the answer."""
@@ -104,22 +105,13 @@ class JudgePage(QWidget):
         self._split.setSpacing(14)
         self._split.addWidget(left, 3)
         self._split.addWidget(right, 2)
-        ground = QWidget()
-        ground.setProperty("role", "ground")
-        column = QVBoxLayout(ground)
+        column = QVBoxLayout()
         column.setContentsMargins(16, 12, 16, 12)
         column.setSpacing(10)
         for part in (self.changed, self._nothing, self._sides):
             column.addWidget(part)
         column.addStretch(1)
-        area = QScrollArea()
-        area.setWidgetResizable(True)
-        area.setFrameShape(QFrame.Shape.NoFrame)
-        area.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        area.setWidget(ground)
-        page = QVBoxLayout(self)
-        page.setContentsMargins(0, 0, 0, 0)
-        page.addWidget(area)
+        scroll_down(self, column)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Side by side where there is room."""

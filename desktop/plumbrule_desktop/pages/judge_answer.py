@@ -1,7 +1,7 @@
 """The answer at the top of the Judge page: the number, its bar against the accuracy needed, the verdict."""
 
 from PySide6.QtCore import QPointF, QRectF, QSize, Qt
-from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPaintEvent, QPen
+from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QSizePolicy, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.brief import Brief
@@ -122,7 +122,7 @@ class AnswerCard(Card):
         super().__init__(parent)
         self.setAccessibleName("The answer")
         self.sentence = label("", "muted")
-        self.number = label("")
+        self.number = label("", "number")
         self.number.setTextInteractionFlags(
             Qt.TextInteractionFlag.TextSelectableByMouse | Qt.TextInteractionFlag.TextSelectableByKeyboard
         )
@@ -164,11 +164,7 @@ class AnswerCard(Card):
             return
         bar = answer.uncertainty if good else None
         self.number.setText(energy(answer.value, answer.unit, bar))
-        font = QFont(self.font())
-        font.setPointSizeF(font.pointSizeF() * 2.1)
-        font.setBold(good)
-        font.setStrikeOut(not good)
-        self.number.setFont(font)
+        self.number.setProperty("struck", "false" if good else "true")
         tint(self.number, None if good else "unknown")
         spoken = (
             self.number.text() if good else f"{self.number.text()}, struck out: do not rely on this number"

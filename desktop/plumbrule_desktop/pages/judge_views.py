@@ -1,7 +1,6 @@
 """The views below the answer: methods, budget, readings, species. Further views are added to one list."""
 
-from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QFrame, QScrollArea, QTabWidget, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QTabBar, QTableView, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Judgement, SpeciesJudgement
@@ -15,6 +14,9 @@ from plumbrule_desktop.plots.series import budget, comparison
 from plumbrule_desktop.state.amounts import MINUS
 from plumbrule_desktop.state.answer_text import within
 from plumbrule_desktop.widgets.card import Card, label, tint
+
+MOST_HEIGHT = 460
+"""A table higher than this, in points, scrolls by itself."""
 
 
 class MethodsView(QWidget):
@@ -79,7 +81,6 @@ class ReadingsView(QWidget):
         super().__init__(parent)
         self.model = GridModel(self)
         self.table = numbers_table(self.model, "Readings of all species")
-        self.table.setMinimumHeight(220)
         self._empty = label("Nothing has been measured yet.", "muted")
         _column(self, self._empty, self.table)
 
@@ -90,6 +91,7 @@ class ReadingsView(QWidget):
         self.model.show(fresh)
         if another or fresh.rows:
             self.table.resizeColumnsToContents()
+        self.table.setMinimumHeight(min(MOST_HEIGHT, height_of(self.table)))
         self._empty.setVisible(not fresh.rows)
         self.table.setVisible(bool(fresh.rows))
 
@@ -146,25 +148,41 @@ def _column(home: QWidget, *parts: QWidget) -> QVBoxLayout:
     return column
 
 
+def height_of(table: QTableView) -> int:
+    """As high as the header and all rows."""
+    rows = sum(table.rowHeight(row) for row in range(table.model().rowCount()))
+    return rows + table.horizontalHeader().height() + 24
+
+
 VIEWS = (MethodsView, BudgetView, ReadingsView, SpeciesView)
 """The one list of views, in the order of their tabs."""
 
 
-class JudgeViews(QTabWidget):
-    """The views as tabs; each scrolls by itself where it is higher than its room."""
+class JudgeViews(QWidget):
+    """The views under tabs. Only the one that is seen takes room, so that the page alone scrolls."""
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
-        self.setDocumentMode(True)
+        self.tabs = QTabBar()
+        self.tabs.setExpanding(False)
+        self.tabs.setAccessibleName("Views of the judgement")
         self.views = tuple(view() for view in VIEWS)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(0)
+        column.addWidget(self.tabs)
         for view in self.views:
-            area = QScrollArea()
-            area.setWidgetResizable(True)
-            area.setFrameShape(QFrame.Shape.NoFrame)
-            area.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-            area.setWidget(view)
-            self.addTab(area, view.title)
-        self.setMinimumHeight(340)
+            self.tabs.addTab(view.title)
+            column.addWidget(view)
+        column.addStretch(1)
+        self.tabs.currentChanged.connect(self.turn_to)
+        self.turn_to(0)
+
+    def turn_to(self, place: int) -> None:
+        """Show one view."""
+        self.tabs.setCurrentIndex(place)
+        for each, view in enumerate(self.views):
+            view.setVisible(each == place)
 
     def show_judgement(self, brief: Brief, judgement: Judgement) -> None:
         """Hand the judgement to every view."""

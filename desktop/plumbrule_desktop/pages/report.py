@@ -1,6 +1,5 @@
 """The Report page: the finished document as it will be exported, and the exports."""
 
-import re
 from pathlib import Path
 
 from PySide6.QtCore import Qt
@@ -9,6 +8,7 @@ from PySide6.QtWidgets import QFileDialog, QPushButton, QVBoxLayout, QWidget
 
 from plumbrule_desktop.pages.report_browser import ReportBrowser
 from plumbrule_desktop.plots.pace import Pace
+from plumbrule_desktop.plots.pictures import file_name
 from plumbrule_desktop.state.answer_text import HAZARD, answer_text
 from plumbrule_desktop.state.desk import Desk, title_of
 from plumbrule_desktop.widgets.card import Card, label
@@ -109,8 +109,3 @@ class ReportPage(QWidget):
     def _copy(self) -> None:
         QGuiApplication.clipboard().setText(answer_text(self._desk.brief, self._desk.judgement))
         self._desk.message.emit("The answer was copied as text.", "note")
-
-
-def file_name(title: str) -> str:
-    """A title as the name of a file."""
-    return re.sub(r"[^\w.+-]+", "_", title).strip("_")[:80] or "question"

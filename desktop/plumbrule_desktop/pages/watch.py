@@ -24,6 +24,7 @@ from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.state.progress import Overall, Stopwatch, overall
 from plumbrule_desktop.state.wording import duration, forecast_words
 from plumbrule_desktop.widgets.card import Card, label
+from plumbrule_desktop.widgets.scrolling import scroll_down
 
 CLOCK_MS = 1000
 NARROW = 860
@@ -79,17 +80,19 @@ class WatchPage(QWidget):
         column.addWidget(self.follow)
         self.splitter = QSplitter(Qt.Orientation.Horizontal)
         self.splitter.setChildrenCollapsible(False)
+        self.splitter.setHandleWidth(12)
         self.splitter.addWidget(left)
         self.splitter.addWidget(self.task)
-        self.splitter.setSizes([600, 500])
-        self.splitter.setStretchFactor(0, 1)
-        self.splitter.setStretchFactor(1, 1)
-        page = QVBoxLayout(self)
-        page.setContentsMargins(16, 12, 16, 12)
-        page.setSpacing(10)
-        page.addWidget(head)
-        page.addWidget(self.splitter, 1)
-        page.addStretch(0)
+        self.splitter.setSizes([640, 460])
+        self.splitter.setStretchFactor(0, 4)
+        self.splitter.setStretchFactor(1, 3)
+        column = QVBoxLayout()
+        column.setContentsMargins(16, 12, 16, 12)
+        column.setSpacing(10)
+        column.addWidget(head)
+        column.addWidget(self.splitter, 1)
+        column.addStretch(0)
+        scroll_down(self, column)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Side by side where there is room."""

@@ -99,7 +99,7 @@ class TaskList(QTreeView):
         self.setVerticalScrollMode(QAbstractItemView.ScrollMode.ScrollPerPixel)
         self.setUniformRowHeights(True)
         self.setIndentation(14)
-        self.setMinimumWidth(260)
+        self.setMinimumSize(260, 170)
         header = self.header()
         header.setStretchLastSection(False)
         header.setMinimumSectionSize(60)

@@ -99,14 +99,14 @@ class TaskView(Card):
         self._no_trace.hide()
         panel = self._panel or self._make_panel()
         panel.show()
-        panel.set_title(f"Convergence of {task.label}")
+        panel.name_picture(f"Convergence of {task.label}")
         panel.plot.show_data(convergence(state.trace, task.spec.settings, task.spec.rung))  # type: ignore[attr-defined]
         panel.refresh()
 
     def _make_panel(self) -> PlotPanel:
         from plumbrule_desktop.plots.convergence import ConvergencePlot
 
-        self._panel = PlotPanel("Convergence", ConvergencePlot())
+        self._panel = PlotPanel("Change of energy and residual", ConvergencePlot())
         self._column.insertWidget(1, self._panel, 1)
         return self._panel
 

@@ -9,7 +9,7 @@ from plumbrule_core.units import convert
 from plumbrule_desktop.look import Colours
 from plumbrule_desktop.plots.rows import AXIS_HEIGHT, LEFT, RowPlot
 from plumbrule_desktop.plots.series import Budget, Numbers, shift_words
-from plumbrule_desktop.state.amounts import energy, signed, unit_words
+from plumbrule_desktop.state.amounts import energy, number, signed, unit_words
 
 ROW = 62.0
 
@@ -58,10 +58,11 @@ class BudgetPlot(RowPlot):
 
     def axis_title(self) -> str:
         """The scale in words, with the sum."""
-        unit = self._data.unit
+        title = f"contribution to the uncertainty, {unit_words(self._data.unit)}"
         if self._data.total is None:
-            return f"contribution to the uncertainty, {unit_words(unit)}"
-        return f"{unit_words(unit)}; dashed: together {energy(self._data.total, unit, self._data.total)}"
+            return title
+        together = number(self._data.total, self._data.unit, self._data.total)
+        return f"{title}; dashed: together {together}"
 
     def lane(self) -> QRectF:
         """The whole width; names and sizes stand above each bar."""

@@ -42,7 +42,7 @@ class _Track:
         self.plot.disableAutoRange()
         self.plot.showGrid(x=True, y=True, alpha=0.25)
         self.plot.getAxis("left").setWidth(74)
-        self.curve = self.plot.plot(symbol=symbol, symbolSize=6)
+        self.curve = self.plot.plot(symbol=symbol, symbolSize=6, antialias=True)
         self.goal = pg.InfiniteLine(angle=0)
         self.cursor = pg.InfiniteLine(angle=90)
         for line in (self.goal, self.cursor):
@@ -72,8 +72,6 @@ class _Track:
         low, high = _decades(curve)
         self.plot.setYRange(low, high, padding=0)
         self.plot.setXRange(0, _wide(iterations), padding=0.01)
-        unit = f" ({curve.unit})" if curve.unit else ""
-        self.plot.setLabel("left", f"{curve.name}{unit}")
 
 
 class ConvergencePlot(pg.GraphicsLayoutWidget):
@@ -85,11 +83,13 @@ class ConvergencePlot(pg.GraphicsLayoutWidget):
         super().__init__(parent)
         self.setAccessibleName("Convergence of the chosen task")
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
-        self.setMinimumHeight(220)
+        self.setMinimumHeight(250)
         self.setFrameStyle(0)
         self._data = convergence(())
         self._at = 0
         self._tracks = (_Track(self, 0, "o"), _Track(self, 1, "t"))
+        self._tracks[0].plot.setLabel("left", "Change (hartree)")
+        self._tracks[1].plot.setLabel("left", "Residual")
         self._tracks[0].plot.getAxis("bottom").setStyle(showValues=False)
         self._tracks[1].plot.setLabel("bottom", "Iteration")
         self._pace = Pace(self, self._redraw)

@@ -17,7 +17,7 @@ from PySide6.QtWidgets import (
 )
 
 from plumbrule_desktop.models.grid import GridModel
-from plumbrule_desktop.plots.pictures import FILTER, save_picture
+from plumbrule_desktop.plots.pictures import FILTER, file_name, save_picture
 from plumbrule_desktop.plots.series import Numbers
 from plumbrule_desktop.widgets.card import label
 
@@ -78,8 +78,7 @@ class PlotPanel(QWidget):
 
     def _arrange(self) -> None:
         top = QHBoxLayout()
-        self._heading = label(self._title, "heading", wrap=False)
-        top.addWidget(self._heading, 1)
+        top.addWidget(label(self._title, "heading"), 1)
         for button in (self._toggle, self._save):
             button.setAutoDefault(False)
             top.addWidget(button)
@@ -94,10 +93,9 @@ class PlotPanel(QWidget):
         """The picture."""
         return self._plot
 
-    def set_title(self, title: str) -> None:
-        """Say what is shown now."""
+    def name_picture(self, title: str) -> None:
+        """What a saved picture is called from now on."""
         self._title = title
-        self._heading.setText(title)
 
     def refresh(self) -> None:
         """The plot's data changed: bring the table up to date where it is seen."""
@@ -118,7 +116,9 @@ class PlotPanel(QWidget):
             self.table.resizeColumnsToContents()
 
     def _ask_where(self) -> None:
-        chosen, kind = QFileDialog.getSaveFileName(self, "Save picture", f"{self._title}.svg", FILTER)
+        chosen, kind = QFileDialog.getSaveFileName(
+            self, "Save picture", f"{file_name(self._title)}.svg", FILTER
+        )
         if chosen:
             path = Path(chosen)
             self.save(path if path.suffix else path.with_suffix(".png" if "png" in kind else ".svg"))

@@ -1,5 +1,6 @@
 """Saving a plot as it is seen: SVG for print, PNG for the rest."""
 
+import re
 from pathlib import Path
 
 from PySide6.QtCore import QPoint, QRect
@@ -8,6 +9,11 @@ from PySide6.QtSvg import QSvgGenerator
 from PySide6.QtWidgets import QWidget
 
 FILTER = "Drawing (*.svg);;Picture (*.png)"
+
+
+def file_name(title: str) -> str:
+    """A title as the name of a file."""
+    return re.sub(r"[^\w.+()-]+", "_", title).strip("_")[:80] or "picture"
 
 
 def save_picture(widget: QWidget, path: Path, title: str) -> None:

@@ -14,7 +14,7 @@ LIBRARIES = (
 
 
 def about_text() -> str:
-    """Version, what it does, the libraries with their licences, and the caution that belongs to every number."""
+    """Version, purpose, the libraries with their licences, and the caution that belongs to every number."""
     lines = "\n".join(f"{name} {_version(package)} \u2013 {licence}" for package, name, licence in LIBRARIES)
     return (
         f"Plumbrule {_version('plumbrule')}\n\n"

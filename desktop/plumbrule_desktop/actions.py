@@ -26,12 +26,21 @@ ROWS = (
     Row("new", "File", "&New casebook", "Begin an empty casebook", Standard.New),
     Row("open", "File", "&Open\u2026", "Open a casebook", Standard.Open),
     Row("demo", "File", "Open &demo", "Open worked questions with molecules to try"),
-    Row("save_copy", "File", "&Save a copy\u2026", "Write the whole casebook to another file", Standard.SaveAs, rule=True),
+    Row(
+        "save_copy",
+        "File",
+        "&Save a copy\u2026",
+        "Write the whole casebook to another file",
+        Standard.SaveAs,
+        rule=True,
+    ),
     Row("export", "File", "&Export\u2026", "Write this question as a report, a table or data", "Ctrl+E"),
     Row("close", "File", "&Close", "Close the window", Standard.Close, rule=True),
     Row("undo", "Edit", "&Undo", "Take the last step back", Standard.Undo),
     Row("redo", "Edit", "&Redo", "Make the step again", Standard.Redo),
-    Row("paste", "Edit", "&Paste molecule", "Put in the molecule on the clipboard", Standard.Paste, rule=True),
+    Row(
+        "paste", "Edit", "&Paste molecule", "Put in the molecule on the clipboard", Standard.Paste, rule=True
+    ),
     Row("open_molecule", "Edit", "&Molecule from file\u2026", "Put in molecules from files", "Ctrl+M"),
     Row("build", "View", "&Build", "Molecules and recipe", "Ctrl+1", group="page"),
     Row("watch", "View", "&Watch", "The run, task by task", "Ctrl+2", group="page"),
@@ -54,7 +63,7 @@ CHOOSER_KEYS = ("add", "rename", "duplicate", "remove")
 
 
 def make_actions(window: QMainWindow, slots: Mapping[str, Callable[[], object]]) -> dict[str, QAction]:
-    """Every action of the table, connected and in the window's menus; raises KeyError where a slot is missing."""
+    """Every action of the table, connected and in its menu; raises KeyError where a slot is missing."""
     menus: dict[str, QMenu] = {}
     groups: dict[str, QActionGroup] = {}
     made: dict[str, QAction] = {}
@@ -75,11 +84,3 @@ def make_actions(window: QMainWindow, slots: Mapping[str, Callable[[], object]])
         action.triggered.connect(lambda _=False, slot=slots[row.key]: slot())
         made[row.key] = action
     return made
-
-
-def menu_of(actions: Mapping[str, QAction], parent: QMainWindow) -> QMenu:
-    """The short menu beside the chooser of questions."""
-    menu = QMenu(parent)
-    for key in CHOOSER_KEYS:
-        menu.addAction(actions[key])
-    return menu

@@ -17,7 +17,7 @@ from plumbrule_desktop.window import Window
 
 
 def main(argv: Sequence[str] | None = None) -> int:
-    """Open the window: empty, on the demo (`--demo`), or on a casebook. `argv` is without the program's name."""
+    """Open the window: empty, on the demo (`--demo`), or on a casebook. `argv` lacks the program's name."""
     arguments = list(sys.argv[1:] if argv is None else argv)
     if PROBE_FLAG in arguments:
         from plumbrule_desktop.scene.probe import draw_one_frame
@@ -57,7 +57,9 @@ def _teller(window: Window) -> Callable[[type[BaseException], BaseException, Tra
 
     def tell(kind: type[BaseException], error: BaseException, trace: TracebackType | None) -> None:
         traceback.print_exception(kind, error, trace)
-        window.banner.say(f"Something went wrong inside the program: {error}. The casebook is safe on disk.", "error")
+        window.banner.say(
+            f"Something went wrong inside the program: {error}. The casebook is safe on disk.", "error"
+        )
 
     return tell
 

@@ -1,4 +1,4 @@
-"""Findings as cards: a mark and a word for the severity, the headline, what it does to the number, and remedies."""
+"""Findings as cards: the severity as mark and word, the headline, the consequence, and remedies."""
 
 from collections.abc import Iterable
 

@@ -1,4 +1,4 @@
-"""How the window looks: one palette for light, one for dark, one accent; every colour in the window comes from here."""
+"""How the window looks: a palette for light, one for dark, one accent. Every colour comes from here."""
 
 from dataclasses import dataclass
 from typing import Literal
@@ -127,7 +127,7 @@ def wear(app: QApplication, scheme: Scheme) -> None:
     chosen = DARK if dark else LIGHT
     app.setStyle("Fusion")
     app.setPalette(palette_of(chosen))
-    app.setStyleSheet(sheet(chosen))
+    app.setStyleSheet(sheet(chosen, "dark" if dark else "light"))
 
 
 def system_is_dark(app: QApplication) -> bool:

@@ -98,7 +98,9 @@ class Bob(QWidget):
         painter.drawLine(anchor, QPointF(anchor.x(), self.height() - 8))
 
 
-_BOB = QPolygonF([QPointF(*p) for p in ((-13, 7), (13, 7), (14.5, 12), (3.5, 38), (0, 46), (-3.5, 38), (-14.5, 12))])
+_BOB = QPolygonF(
+    [QPointF(*p) for p in ((-13, 7), (13, 7), (14.5, 12), (3.5, 38), (0, 46), (-3.5, 38), (-14.5, 12))]
+)
 
 
 class PlumbLine(QWidget):
@@ -132,12 +134,17 @@ class PlumbLine(QWidget):
         verdict = judgement.verdict if judgement else Verdict(level="unknown")
         self.bob.show_level(verdict.level)
         self.words.setText(WORDS[verdict.level])
-        self.words.setStyleSheet(f"color: {colours(self).level(verdict.level)}")
+        c = colours(self)
+        self.words.setStyleSheet(
+            f"color: {c.muted if verdict.level == 'unknown' else c.level(verdict.level)}"
+        )
         self.answer.setText(_answer(judgement))
         self.answer.setVisible(bool(self.answer.text()))
-        self.headline.setText(verdict.headline)
+        self.headline.setText(verdict.headline if verdict.level != "unknown" else "")
         self.setToolTip("\n".join(verdict.reasons))
-        self.setAccessibleDescription(". ".join(filter(None, (self.words.text(), self.answer.text(), verdict.headline))))
+        self.setAccessibleDescription(
+            ". ".join(filter(None, (self.words.text(), self.answer.text(), self.headline.text())))
+        )
 
 
 def _answer(judgement: Judgement | None) -> str:

@@ -1,15 +1,16 @@
 """The question line: which question, its sentence with underlined controls, the forecast, and Run or Stop."""
 
-from PySide6.QtCore import Qt
+from collections.abc import Iterable
+
+from PySide6.QtCore import QSize, Qt
+from PySide6.QtGui import QAction
 from PySide6.QtWidgets import (
-    QComboBox,
     QFrame,
     QHBoxLayout,
     QLabel,
     QLineEdit,
     QMenu,
     QPushButton,
-    QToolButton,
     QVBoxLayout,
     QWidget,
 )
@@ -24,8 +25,22 @@ from plumbrule_desktop.widgets.card import label
 from plumbrule_desktop.widgets.flow import FlowLayout
 from plumbrule_desktop.widgets.popup import Popup
 
+CHOOSER_WIDTH = 210
 NO_MOLECULE = (Clause(text="Put a molecule in, then ask what you want to know."),)
 NO_QUESTION = (Clause(text="Ask: "), Clause(text="what do you want to know?", key="kind"))
+
+
+class ClauseButton(QPushButton):
+    """An underlined piece of the sentence, no wider than its words."""
+
+    def sizeHint(self) -> QSize:
+        """The words alone."""
+        metrics = self.fontMetrics()
+        return QSize(metrics.horizontalAdvance(self.text().replace("&&", "&")) + 3, metrics.height() + 6)
+
+    def minimumSizeHint(self) -> QSize:
+        """The same."""
+        return self.sizeHint()
 
 
 class Sentence(QWidget):
@@ -43,20 +58,22 @@ class Sentence(QWidget):
     def refresh(self) -> None:
         """Show the sentence of the chosen question."""
         clauses, read_only = _clauses(self._desk.brief), self._desk.casebook.read_only
-        wrong = frozenset(fault.where.removeprefix("question.").split(".")[0] for fault in self._desk.brief.faults())
+        wrong = _wrong_keys(self._desk.brief)
         if (clauses, read_only, wrong) == self._shown:
             return
         self._shown = (clauses, read_only, wrong)
         focused = next((key for key, button in self.clauses.items() if button.hasFocus()), None)
         self._clear()
         for clause in clauses:
-            self._flow.addWidget(self._control(clause, read_only, wrong) if clause.key else _words(clause.text))
+            self._flow.addWidget(
+                self._control(clause, read_only, wrong) if clause.key else _words(clause.text)
+            )
         if focused in self.clauses:
             self.clauses[focused].setFocus()
         self.setAccessibleName("".join(clause.text for clause in clauses))
 
     def _control(self, clause: Clause, read_only: bool, wrong: frozenset[str]) -> QPushButton:
-        button = QPushButton(clause.text.replace("&", "&&"), self)
+        button = ClauseButton(clause.text.replace("&", "&&"), self)
         button.setProperty("role", "clause")
         button.setProperty("faulty", "true" if clause.key in wrong else "false")
         button.setCursor(Qt.CursorShape.PointingHandCursor)
@@ -82,44 +99,49 @@ class Sentence(QWidget):
                 widget.deleteLater()
 
 
-class Chooser(QWidget):
-    """Which of the casebook's questions is shown, with a menu to add, rename, copy and remove."""
+class Chooser(QPushButton):
+    """Which question is shown; its menu lists them all, and the ways to add, rename, copy, remove."""
 
     def __init__(self, desk: Desk, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._desk = desk
-        self.list = QComboBox()
-        self.list.setAccessibleName("Question")
-        self.list.setToolTip("The questions of this casebook")
-        self.list.setFixedWidth(196)
-        self.list.activated.connect(lambda place: desk.choose(self.list.itemData(place)))
-        self.more = QToolButton(text="\u22ef")
-        self.more.setProperty("role", "button")
-        self.more.setAccessibleName("Add, rename, copy or remove a question")
-        self.more.setToolTip("Add, rename, copy or remove a question")
-        self.more.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
-        row = QHBoxLayout(self)
-        row.setContentsMargins(0, 0, 0, 0)
-        row.setSpacing(4)
-        row.addWidget(self.list)
-        row.addWidget(self.more)
+        self._actions: tuple[QAction, ...] = ()
+        self.setFixedWidth(CHOOSER_WIDTH)
+        self.setProperty("role", "chooser")
+        self.setMenu(QMenu(self))
+        self.menu().aboutToShow.connect(self._fill)
         desk.briefs_changed.connect(self.refresh)
+        self.refresh()
 
-    def set_menu(self, menu: QMenu) -> None:
-        """The actions, from the one table of actions."""
-        self.more.setMenu(menu)
+    def set_actions(self, actions: Iterable[QAction]) -> None:
+        """The actions below the list, from the one table of actions."""
+        self._actions = tuple(actions)
+
+    def _fill(self) -> None:
+        menu = self.menu()
+        menu.clear()
+        for entry in self._desk.entries:
+            action = menu.addAction(entry.title.replace("&", "&&"))
+            action.setCheckable(True)
+            action.setChecked(entry.id == self._desk.brief_id)
+            action.triggered.connect(lambda _=False, number=entry.id: self._desk.choose(number))
+        menu.addSeparator()
+        menu.addActions(list(self._actions))
 
     def refresh(self) -> None:
-        """Show the questions of the casebook."""
+        """Show the title of the chosen question."""
         entries = self._desk.entries
-        self.list.clear()
-        for entry in entries:
-            self.list.addItem(entry.title, entry.id)
-            self.list.setItemData(self.list.count() - 1, entry.title, Qt.ItemDataRole.ToolTipRole)
-        ids = [entry.id for entry in entries]
-        if self._desk.brief_id in ids:
-            self.list.setCurrentIndex(ids.index(self._desk.brief_id))
-        self.list.setToolTip(self.list.currentText())
+        title = next((entry.title for entry in entries if entry.id == self._desk.brief_id), "No question")
+        room = CHOOSER_WIDTH - 46
+        short = self.fontMetrics().elidedText(title, Qt.TextElideMode.ElideRight, room)
+        self.setText(f"\u2002{short}".replace("&", "&&"))
+        many = (
+            f"{len(entries)} questions in this casebook"
+            if len(entries) != 1
+            else "The only question of this casebook"
+        )
+        self.setToolTip(f"{title}\n{many}")
+        self.setAccessibleName(f"Question: {title}")
 
     def rename(self) -> Popup:
         """Ask for another title."""
@@ -217,5 +239,13 @@ def _clauses(brief: Brief) -> tuple[Clause, ...]:
     return brief.question.sentence(brief.by_name) if brief.question else NO_QUESTION
 
 
+def _wrong_keys(brief: Brief) -> frozenset[str]:
+    """The keys of the sentence at which the question itself is wrong."""
+    places = (fault.where.split(".") for fault in brief.faults())
+    return frozenset(steps[1] for steps in places if steps[0] == "question" and len(steps) > 1)
+
+
 def _words(text: str) -> QLabel:
-    return label(text, "sentence", wrap=False)
+    words = label(text, "sentence", wrap=False)
+    words.setIndent(0)
+    return words

@@ -25,6 +25,14 @@ KIND_SAYS = {
 }
 
 
+class PlainSpin(QDoubleSpinBox):
+    """A spin box that shows no more digits than there are."""
+
+    def textFromValue(self, value: float) -> str:
+        """`4`, `0.25`."""
+        return self.locale().toString(round(value, self.decimals()), "g", 10)
+
+
 def popup_for(key: str, desk: Desk, parent: QWidget) -> Popup | None:
     """The editor for one clause, or None while there is no molecule to ask about."""
     if not desk.brief.species:
@@ -67,7 +75,7 @@ class SpeciesPopup(Popup):
 
     def _choose(self, desk: Desk, key: str, name: str) -> None:
         self.close()
-        changed = {key: name}
+        changed: asking.Data = {key: name}
         if isinstance(desk.brief.question, BondQuestion) and key == "species":
             found = asking.cuttable(desk.brief.by_name[name])
             changed |= {"cut": [place + 1 for place in found[0]] if found else [1, 2], "fragments": None}
@@ -95,7 +103,9 @@ class CutPopup(Popup):
         self.column.addWidget(self.bonds)
         if not found:
             self.bonds.setEnabled(False)
-            self.column.addWidget(label("No bond of this molecule leaves two pieces when it is cut.", "muted"))
+            self.column.addWidget(
+                label("No bond of this molecule leaves two pieces when it is cut.", "muted")
+            )
         self.add_done("Cut this bond").clicked.connect(lambda: self._cut(desk))
         if len(desk.brief.species) >= 3:
             self._offer_fragments(desk, question)
@@ -108,7 +118,9 @@ class CutPopup(Popup):
         for place, box in enumerate(self.fragments):
             box.addItems(others)
             box.setAccessibleName(f"Fragment {place + 1}")
-            box.setCurrentText(question.fragments[place] if question.fragments else others[min(place, len(others) - 1)])
+            box.setCurrentText(
+                question.fragments[place] if question.fragments else others[min(place, len(others) - 1)]
+            )
             row.addWidget(box)
         use = QPushButton("Use these")
         use.clicked.connect(lambda: self._use_fragments(desk))
@@ -119,7 +131,9 @@ class CutPopup(Popup):
         bond = self.bonds.currentData()
         self.close()
         if bond is not None:
-            edits = asking.set_question(desk.brief, cut=list(bond), fragments=None, fragment_multiplicities=None)
+            edits = asking.set_question(
+                desk.brief, cut=list(bond), fragments=None, fragment_multiplicities=None
+            )
             desk.edit(edits, "Choose the bond")
 
     def _use_fragments(self, desk: Desk) -> None:
@@ -137,11 +151,13 @@ class TermsPopup(Popup):
         question = desk.brief.question
         assert isinstance(question, ReactionQuestion)
         self._desk = desk
-        self.column.addWidget(label("Reactants count negative, products positive, 0 leaves out.", "muted", wrap=False))
+        self.column.addWidget(
+            label("Reactants count negative, products positive, 0 leaves out.", "muted", wrap=False)
+        )
         grid = QGridLayout()
         self.boxes: dict[str, QDoubleSpinBox] = {}
         for row, one in enumerate(desk.brief.species):
-            box = QDoubleSpinBox(minimum=-1000, maximum=1000, decimals=2, singleStep=1)
+            box = PlainSpin(minimum=-1000, maximum=1000, decimals=2, singleStep=1)
             box.setValue(question.terms.get(one.name, 0.0))
             box.setAccessibleName(f"Coefficient of {one.name}")
             box.valueChanged.connect(self._weigh)
@@ -180,7 +196,7 @@ class WithinPopup(Popup):
         question = desk.brief.question
         assert question is not None
         row = QHBoxLayout()
-        self.value = QDoubleSpinBox(minimum=0.0001, maximum=100_000, decimals=4)
+        self.value = PlainSpin(minimum=0.0001, maximum=100_000, decimals=4)
         self.value.setValue(question.within)
         self.value.setAccessibleName("Accuracy needed")
         self.value.setStepType(QDoubleSpinBox.StepType.AdaptiveDecimalStepType)
@@ -192,7 +208,7 @@ class WithinPopup(Popup):
         row.addWidget(self.value, 1)
         row.addWidget(self.unit)
         self.column.addLayout(row)
-        hint = "4 kJ/mol is 1 kcal/mol: often called chemical accuracy."
+        hint = "4 kJ/mol is about 1 kcal/mol: often called chemical accuracy."
         self.column.addWidget(label(hint, "muted", wrap=False), 0, Qt.AlignmentFlag.AlignLeft)
         self.add_done().clicked.connect(lambda: self._take(desk))
 
@@ -210,4 +226,8 @@ def _faults_after(brief: Brief, edits: tuple[Edit, ...]) -> str:
     return asking.side_words(after.question, after) if after.question else ""
 
 
-_POPUPS: dict[str, Callable[[Desk, QWidget], Popup]] = {"cut": CutPopup, "terms": TermsPopup, "within": WithinPopup}
+_POPUPS: dict[str, Callable[[Desk, QWidget], Popup]] = {
+    "cut": CutPopup,
+    "terms": TermsPopup,
+    "within": WithinPopup,
+}

@@ -19,7 +19,7 @@ from PySide6.QtWidgets import (
 
 from plumbrule_desktop import look
 from plumbrule_desktop.about import about_text
-from plumbrule_desktop.actions import make_actions, menu_of
+from plumbrule_desktop.actions import CHOOSER_KEYS, make_actions
 from plumbrule_desktop.plumb_line import PlumbLine
 from plumbrule_desktop.question_line import QuestionLine
 from plumbrule_desktop.scene.three_d import ThreeD
@@ -65,8 +65,9 @@ class Window(QMainWindow):
     # putting it together
 
     def _compose(self) -> None:
-        for _ in PAGES:
-            self.stack.addWidget(QWidget())
+        self._empty = [QWidget() for _ in PAGES]
+        for empty in self._empty:
+            self.stack.addWidget(empty)
         switch = QHBoxLayout()
         switch.setContentsMargins(14, 8, 14, 4)
         switch.addWidget(self.segments)
@@ -83,7 +84,9 @@ class Window(QMainWindow):
         row.setSpacing(0)
         row.addLayout(left, 1)
         row.addWidget(self.plumb_line)
+        ground.setFocusPolicy(Qt.FocusPolicy.ClickFocus)
         self.setCentralWidget(ground)
+        ground.setFocus()
         ground.installEventFilter(self)
 
     def _slots(self) -> dict[str, Callable[[], object]]:
@@ -121,7 +124,7 @@ class Window(QMainWindow):
         for each in file_menu:
             if isinstance(each, QMenu):
                 each.insertMenu(actions["demo"], self.recent_menu)
-        self.question_line.chooser.set_menu(menu_of(actions, self))
+        self.question_line.chooser.set_actions(actions[key] for key in CHOOSER_KEYS)
         actions["build"].setChecked(True)
         actions[self.settings.scheme].setChecked(True)
         actions["redo"].setShortcuts([QKeySequence("Ctrl+Shift+Z"), QKeySequence("Ctrl+Y")])
@@ -165,7 +168,10 @@ class Window(QMainWindow):
         self.three_d.ask()
 
     def _maker(self, place: int) -> Callable[[], None]:
-        return lambda: self._page(place) and None
+        def make() -> None:
+            self._page(place)
+
+        return make
 
     def _page(self, place: int) -> QWidget:
         name = PAGES[place]
@@ -175,7 +181,7 @@ class Window(QMainWindow):
             wanted = getattr(page, "page_wanted", None)
             if wanted is not None:
                 wanted.connect(lambda name: self.show_page(PAGES.index(name)))
-            empty = self.stack.widget(place)
+            empty = self._empty[place]
             current = self.stack.currentIndex()
             self.stack.insertWidget(place, page)
             self.stack.removeWidget(empty)
@@ -300,7 +306,9 @@ class Window(QMainWindow):
         box.open()
 
     def _ask_keep(self) -> None:
-        box = self._box("This casebook is not saved.", "It is gone when the window closes, unless you save it.")
+        box = self._box(
+            "This casebook is not saved.", "It is gone when the window closes, unless you save it."
+        )
         save = box.addButton("Save\u2026", QMessageBox.ButtonRole.AcceptRole)
         leave = box.addButton("Close without saving", QMessageBox.ButtonRole.DestructiveRole)
         box.addButton("Cancel", QMessageBox.ButtonRole.RejectRole)
@@ -350,7 +358,9 @@ def _build(window: Window) -> QWidget:
 def _watch(window: Window) -> QWidget:
     from plumbrule_desktop.pages.watch import WatchPage
 
-    return WatchPage(window.desk)
+    page = WatchPage(window.desk)
+    page.page_wanted.connect(lambda name: window.show_page(PAGES.index(name)))
+    return page
 
 
 def _judge(window: Window) -> QWidget:
@@ -365,4 +375,9 @@ def _report(window: Window) -> QWidget:
     return ReportPage(window.desk)
 
 
-_MAKE: dict[str, Callable[[Window], QWidget]] = {"build": _build, "watch": _watch, "judge": _judge, "report": _report}
+_MAKE: dict[str, Callable[[Window], QWidget]] = {
+    "build": _build,
+    "watch": _watch,
+    "judge": _judge,
+    "report": _report,
+}

@@ -12,3 +12,8 @@ def text(name: str) -> str:
 def demo_questions() -> tuple[Path, ...]:
     """The demo's question files, in the order in which the demo casebook shows them."""
     return tuple(sorted(Path(str(files(__name__))).joinpath("demo").glob("*.toml")))
+
+
+def icon(name: str) -> Path:
+    """The path of one shipped icon, as `down_light` (SVG)."""
+    return Path(str(files(__name__))) / "icons" / f"{name}.svg"

@@ -6,7 +6,14 @@ from vtkmodules.vtkCommonCore import VTK_UNSIGNED_CHAR, vtkPoints, vtkUnsignedCh
 from vtkmodules.vtkCommonDataModel import vtkCellArray, vtkPolyData
 from vtkmodules.vtkFiltersCore import vtkTubeFilter
 from vtkmodules.vtkFiltersSources import vtkSphereSource
-from vtkmodules.vtkRenderingCore import vtkActor, vtkGlyph3DMapper, vtkPolyDataMapper, vtkRenderer, vtkRenderWindow
+from vtkmodules.vtkRenderingCore import (
+    vtkActor,
+    vtkGlyph3DMapper,
+    vtkMapper,
+    vtkPolyDataMapper,
+    vtkRenderer,
+    vtkRenderWindow,
+)
 
 import vtkmodules.vtkRenderingOpenGL2  # noqa: F401  isort: skip - registers the renderer
 
@@ -36,13 +43,13 @@ class Picture:
                 self._renderer.AddActor(_sticks(scene))
 
     def render(self, camera: Camera, size: tuple[int, int], ground: tuple[int, int, int]) -> np.ndarray:
-        """RGBA pixels (height, width, 4), the bottom row first; valid until the next call. `size` in device pixels."""
+        """RGBA (height, width, 4), bottom row first, valid until the next call; `size` in device pixels."""
         width, height = size
         self._renderer.SetBackground(*(part / 255 for part in ground))
         self._window.SetSize(width, height)
         self._aim(camera)
         self._window.Render()
-        self._window.GetRGBACharPixelData(0, 0, width - 1, height - 1, 1, self._pixels)
+        self._window.GetRGBACharPixelData(0, 0, width - 1, height - 1, 1, self._pixels, 0)
         return vtk_to_numpy(self._pixels).reshape(height, width, 4)
 
     def _aim(self, camera: Camera) -> None:
@@ -105,7 +112,7 @@ def _colours(shades: np.ndarray) -> vtkUnsignedCharArray:
     return numpy_to_vtk(np.ascontiguousarray(shades), deep=True, array_type=VTK_UNSIGNED_CHAR)
 
 
-def _actor(mapper: vtkPolyDataMapper) -> vtkActor:
+def _actor(mapper: vtkMapper) -> vtkActor:
     actor = vtkActor()
     actor.SetMapper(mapper)
     look = actor.GetProperty()

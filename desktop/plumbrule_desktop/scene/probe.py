@@ -1,4 +1,4 @@
-"""Whether this computer can draw 3-D: asked of a child process, since a computer without GL ends the asking one."""
+"""Whether this computer can draw 3-D: asked in a child process, which a computer without GL ends."""
 
 import sys
 
@@ -23,7 +23,7 @@ def draw_one_frame() -> int:
     window.AddRenderer(renderer)
     window.SetSize(32, 32)
     window.Render()
-    window.GetRGBACharPixelData(0, 0, 31, 31, 1, pixels)
+    window.GetRGBACharPixelData(0, 0, 31, 31, 1, pixels, 0)
     window.Finalize()
     drawn = np.asarray(vtk_to_numpy(pixels)).reshape(32, 32, 4)
     return 0 if drawn[16, 16, :3].max() > 60 else 1

@@ -1,4 +1,4 @@
-"""The molecule that can be turned: one widget over the 3-D picture, or over the plain one where there is no 3-D."""
+"""The molecule that can be turned: one widget over the 3-D picture, or over the plain one."""
 
 from typing import TYPE_CHECKING
 
@@ -55,7 +55,9 @@ class MoleculeView(QWidget):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
         self.setAccessibleName("Picture of the molecule")
-        self.setAccessibleDescription("Arrow keys turn, comma and full stop roll, plus and minus zoom, Home shows all")
+        self.setAccessibleDescription(
+            "Arrow keys turn, comma and full stop roll, plus and minus zoom, Home shows all"
+        )
         self._scene: Scene | None = None
         self._camera = Camera()
         self._chosen: tuple[int, ...] = ()
@@ -139,7 +141,7 @@ class MoleculeView(QWidget):
             if self._picture is not None:
                 self._paint_picture(painter, QColor(c.surface))
             else:
-                paint_flat(painter, self._scene, self._camera, size, QColor(c.text))
+                paint_flat(painter, self._scene, self._camera, size)
             paint_symbols(painter, self._scene, self._camera, size, self._chosen, QColor(c.accent))
         if self.hasFocus():
             painter.setPen(QPen(QColor(c.accent), 2))
@@ -223,7 +225,8 @@ class MoleculeView(QWidget):
     def _walk(self, step: int) -> None:
         count = len(self._scene.symbols) if self._scene is not None else 0
         if count:
-            self._choose((((self._chosen[-1] if self._chosen else -step * (step < 0) - (step > 0)) + step) % count,))
+            start = self._chosen[-1] if self._chosen else (-1 if step > 0 else 0)
+            self._choose(((start + step) % count,))
 
 
 def _chosen_after(chosen: tuple[int, ...], atom: int | None) -> tuple[int, ...]:

@@ -44,7 +44,9 @@ def cuttable(species: Species) -> tuple[Bond, ...]:
     count = len(species.atoms)
     whole = len(pieces(count, links))
     return tuple(
-        link for link in links if len(pieces(count, [other for other in links if other != link])) == whole + 1 == 2
+        link
+        for link in links
+        if len(pieces(count, [other for other in links if other != link])) == whole + 1 == 2
     )
 
 

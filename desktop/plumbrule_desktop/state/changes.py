@@ -82,7 +82,9 @@ def with_rung(brief: Brief, order: tuple[str, ...], rung: str, wanted: bool) -> 
     """The recipe with a rung more or fewer, in the given order."""
     chosen = set(brief.recipe.rungs) | {rung} if wanted else set(brief.recipe.rungs) - {rung}
     known = [name for name in order if name in chosen]
-    return set_recipe("rungs", known + [name for name in brief.recipe.rungs if name in chosen and name not in order])
+    return set_recipe(
+        "rungs", known + [name for name in brief.recipe.rungs if name in chosen and name not in order]
+    )
 
 
 def _species(kept: list[Species]) -> Edit:

@@ -295,7 +295,9 @@ class Desk(QObject):
         self._brief = brief
         self._plan, self._check, self._judgement = None, (), None
         self.brief_changed.emit()
-        self._with_session(lambda session: session.put_brief(brief_id, brief, says), lambda _: self._refresh())
+        self._with_session(
+            lambda session: session.put_brief(brief_id, brief, says), lambda _: self._refresh()
+        )
         return True
 
     def apply(self, remedy: Remedy) -> None:
@@ -342,7 +344,9 @@ class Desk(QObject):
 
     # molecules
 
-    def read(self, work: Callable[[], tuple[Species, ...]], then: Callable[[tuple[Species, ...]], None]) -> None:
+    def read(
+        self, work: Callable[[], tuple[Species, ...]], then: Callable[[tuple[Species, ...]], None]
+    ) -> None:
         """Read molecules in a thread; a message says why they cannot be read."""
         self._reader.do(work, then, self._say)
 
@@ -496,7 +500,9 @@ class Desk(QObject):
         if reset:
             self._fresh = True
             self._forget()
-        self._clerk.do(lambda: _shelf(session, brief_id), lambda seen: self._shelved(seen, generation), self._say)
+        self._clerk.do(
+            lambda: _shelf(session, brief_id), lambda seen: self._shelved(seen, generation), self._say
+        )
         self._clerk.do(
             lambda: self._survey(session, brief_id, generation),
             oops=lambda error: self._say(error) if generation == self._generation else None,

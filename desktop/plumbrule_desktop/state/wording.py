@@ -35,7 +35,8 @@ def forecast_details(forecast: Forecast) -> str:
     """The range of a forecast and what it rests on."""
     disk = f"\nScratch space on disk: {memory(forecast.disk_mb)}" if forecast.disk_mb else ""
     return (
-        f"Time: between {duration(forecast.seconds_low)} and {duration(forecast.seconds_high)} ({forecast.sure})\n"
+        f"Time: between {duration(forecast.seconds_low)} and {duration(forecast.seconds_high)} "
+        f"({forecast.sure})\n"
         f"Memory at its peak: {memory(forecast.memory_mb)}{disk}"
     )
 

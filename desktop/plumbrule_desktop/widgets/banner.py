@@ -27,7 +27,8 @@ class Strip(QFrame):
         row.addWidget(label(text), 1)
         self._row = row
         if not lasting:
-            close = QToolButton(text="\u2715")
+            close = QToolButton()
+            close.setText("\u2715")
             close.setProperty("role", "quiet")
             close.setAccessibleName("Put this message away")
             close.setToolTip("Put this message away")

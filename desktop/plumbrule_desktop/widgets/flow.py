@@ -7,7 +7,9 @@ from PySide6.QtWidgets import QLayout, QLayoutItem, QWidget
 class FlowLayout(QLayout):
     """Widgets in lines, centred on each line's height."""
 
-    def __init__(self, parent: QWidget | None = None, spacing: int = 6, line_spacing: int | None = None) -> None:
+    def __init__(
+        self, parent: QWidget | None = None, spacing: int = 6, line_spacing: int | None = None
+    ) -> None:
         super().__init__(parent)
         self._items: list[QLayoutItem] = []
         self._gap = spacing
@@ -22,11 +24,11 @@ class FlowLayout(QLayout):
         """How many items there are."""
         return len(self._items)
 
-    def itemAt(self, index: int) -> QLayoutItem | None:  # type: ignore[override]
+    def itemAt(self, index: int) -> QLayoutItem | None:
         """The item at a place, or None."""
         return self._items[index] if 0 <= index < len(self._items) else None
 
-    def takeAt(self, index: int) -> QLayoutItem | None:  # type: ignore[override]
+    def takeAt(self, index: int) -> QLayoutItem | None:
         """Give the item back."""
         return self._items.pop(index) if 0 <= index < len(self._items) else None
 

@@ -38,11 +38,16 @@ class SeverityMark(QWidget):
         painter.setFont(font)
         painter.setPen(QPen(QColor(c.surface)))
         sign = {"note": "i", "care": "!", "stop": "\u00d7"}[self._severity]
-        painter.drawText(box.adjusted(0, 3 if self._severity == "care" else 0, 0, 0), Qt.AlignmentFlag.AlignCenter, sign)
+        painter.drawText(
+            box.adjusted(0, 3 if self._severity == "care" else 0, 0, 0), Qt.AlignmentFlag.AlignCenter, sign
+        )
         painter.end()
 
 
 _TRIANGLE = QPolygonF([QPointF(9, 1), QPointF(17.5, 16.5), QPointF(0.5, 16.5)])
 _OCTAGON = QPolygonF(
-    [QPointF(*p) for p in ((5.7, 1), (12.3, 1), (17, 5.7), (17, 12.3), (12.3, 17), (5.7, 17), (1, 12.3), (1, 5.7))]
+    [
+        QPointF(*p)
+        for p in ((5.7, 1), (12.3, 1), (17, 5.7), (17, 12.3), (12.3, 17), (5.7, 17), (1, 12.3), (1, 5.7))
+    ]
 )

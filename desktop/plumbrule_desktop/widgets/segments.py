@@ -20,7 +20,9 @@ class Segments(QFrame):
         row.setSpacing(2)
         self._group = QButtonGroup(self)
         for place, name in enumerate(names):
-            button = QToolButton(text=name, checkable=True)
+            button = QToolButton()
+            button.setText(name)
+            button.setCheckable(True)
             button.setProperty("role", "segment")
             button.setAccessibleName(name)
             self._group.addButton(button, place)

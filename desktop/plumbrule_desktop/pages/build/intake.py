@@ -1,5 +1,6 @@
 """How molecules come in: pasted, from files, as SMILES, dropped. Every way ends at `take`."""
 
+from functools import partial
 from pathlib import Path
 
 from PySide6.QtCore import QMimeData, QObject, Signal
@@ -34,13 +35,17 @@ class Intake(QObject):
 
     def take(self, data: QMimeData) -> None:
         """Files or text, pasted or dropped."""
-        paths = [Path(url.toLocalFile()) for url in data.urls() if url.isLocalFile()] if data.hasUrls() else []
+        paths = (
+            [Path(url.toLocalFile()) for url in data.urls() if url.isLocalFile()] if data.hasUrls() else []
+        )
         if paths:
             self.files(paths)
         elif data.hasText() and data.text().strip():
             self.text(data.text(), "Paste a molecule")
         else:
-            self._desk.message.emit("The clipboard holds no text and no file that could be a molecule.", "error")
+            self._desk.message.emit(
+                "The clipboard holds no text and no file that could be a molecule.", "error"
+            )
 
     def text(self, text: str, says: str) -> None:
         """Text in any format that is understood, SMILES included."""
@@ -49,7 +54,7 @@ class Intake(QObject):
     def files(self, paths: list[Path]) -> None:
         """Files, each read by its ending."""
         for path in paths:
-            self._desk.read_file(path, lambda species, name=path.name: self._add(species, f"Put in {name}"))
+            self._desk.read_file(path, partial(self._add, says=f"Put in {path.name}"))
 
     def _add(self, species: tuple[Species, ...], says: str) -> None:
         before = set(self._desk.brief.by_name)

@@ -1,7 +1,5 @@
 """The ladder: a card for each rung, with what it is and what it will cost."""
 
-from collections.abc import Iterable
-
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QVBoxLayout, QWidget
 
@@ -10,6 +8,8 @@ from plumbrule_desktop.state import changes
 from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.state.wording import forecast_details, forecast_words
 from plumbrule_desktop.widgets.card import Card, label
+
+FUNCTIONAL = "density functional"
 
 
 class RungCard(Card):
@@ -73,19 +73,26 @@ class Ladder(QWidget):
         for name, card in self.cards.items():
             card.show_rung(name in chosen, costs.get(name), desk.casebook.read_only)
 
-    def _rebuild(self, names: Iterable[str]) -> None:
-        for card in self.cards.values():
-            self._column.removeWidget(card)
-            card.hide()
-            card.deleteLater()
+    def _rebuild(self, names: tuple[str, ...]) -> None:
+        while (item := self._column.takeAt(0)) is not None:
+            old = item.widget()
+            if old is not None:
+                old.hide()
+                old.deleteLater()
         offered = {rung.name: rung for rung in self._desk.offer.rungs}
         self.cards = {}
         for name in names:
             rung = offered.get(name)
             card = RungCard(name, rung.says if rung else "", rung.citation if rung else "")
             card.wanted.connect(self._toggle)
-            self._column.insertWidget(0, card)
             self.cards[name] = card
+        functionals = [name for name in names if name in offered and offered[name].kind == FUNCTIONAL]
+        for name in reversed([name for name in names if name not in functionals]):
+            self._column.addWidget(self.cards[name])
+        if functionals:
+            self._column.addWidget(label("Density functionals, to compare with", "muted"))
+        for name in functionals:
+            self._column.addWidget(self.cards[name])
 
     def _toggle(self, name: str, on: bool) -> None:
         desk = self._desk

@@ -1,7 +1,15 @@
 """The middle of the Build page: the picture of the chosen species, or the invitation while there is none."""
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QPushButton, QStackedWidget, QToolButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import (
+    QFrame,
+    QHBoxLayout,
+    QPushButton,
+    QStackedWidget,
+    QToolButton,
+    QVBoxLayout,
+    QWidget,
+)
 
 from plumbrule_core.documents.bonding import distance
 from plumbrule_core.documents.species import Species
@@ -45,7 +53,7 @@ class Invitation(QWidget):
 
 
 class MoleculePanel(Card):
-    """Picture with a title above and a line about the chosen atoms below. The seam for an editor is `view`."""
+    """Picture, title above, a line about the chosen atoms below. The seam for an editor is `view`."""
 
     cut_wanted = Signal(str, int, int)
     """Ask for the energy of this bond: species, atoms from 1."""
@@ -61,7 +69,8 @@ class MoleculePanel(Card):
         self.says = label(HINT, "muted")
         self.cut = QPushButton("Ask for this bond")
         self.cut.clicked.connect(self._ask_cut)
-        self.fit = QToolButton(text="Show all")
+        self.fit = QToolButton()
+        self.fit.setText("Show all")
         self.fit.setProperty("role", "button")
         self.fit.setToolTip("Bring the whole molecule into view (Home)")
         self.fit.clicked.connect(self.view.fit)
@@ -110,7 +119,9 @@ class MoleculePanel(Card):
         if self._closed or self.view.three_d:
             return
         if answer != YES:
-            self.why_flat.setText(f"This is a plain picture, since 3-D cannot be drawn on this computer: {answer}.")
+            self.why_flat.setText(
+                f"This is a plain picture, since 3-D cannot be drawn on this computer: {answer}."
+            )
             self.why_flat.show()
             return
         from plumbrule_desktop.scene.picture import Picture

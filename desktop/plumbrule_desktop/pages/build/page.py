@@ -14,7 +14,7 @@ from plumbrule_desktop.state.desk import Desk
 
 
 class BuildPage(QWidget):
-    """Species at the left, the picture in the middle, the recipe at the right. Molecules can be dropped on it."""
+    """Species left, the picture in the middle, the recipe right. Molecules can be dropped on it."""
 
     def __init__(self, desk: Desk, three_d: ThreeD, parent: QWidget | None = None) -> None:
         super().__init__(parent)

@@ -79,13 +79,15 @@ class Field(QWidget):
 
 
 class RecipePanel(QWidget):
-    """The recipe as controls in plain words. It holds nothing: every change is an edit of the desk's brief."""
+    """The recipe as controls in plain words; every change is an edit of the desk's brief."""
 
     def __init__(self, desk: Desk, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._desk = desk
         self.findings = FindingsView()
-        self.findings.remedy_chosen.connect(desk.apply)
+        self.remarks = FindingsView()
+        for view in (self.findings, self.remarks):
+            view.remedy_chosen.connect(desk.apply)
         self.ladder = Ladder(desk)
         self.rung_fault = label("", "fault")
         self.basis = CalmCombo()
@@ -104,7 +106,9 @@ class RecipePanel(QWidget):
             combo.addItem(text, value)
         says = f"Change the {CHOICES[key][0].lower()}"
         combo.activated.connect(
-            lambda _, key=key, combo=combo: self._desk.edit(changes.set_recipe(key, combo.currentData()), says)
+            lambda _, key=key, combo=combo: self._desk.edit(
+                changes.set_recipe(key, combo.currentData()), says
+            )
         )
         return combo
 
@@ -116,6 +120,7 @@ class RecipePanel(QWidget):
         for field in (self.fields["basis"], self._pair_field, *(self.fields[key] for key in CHOICES)):
             settings.column.addWidget(field)
         self._before = label("Before the run", "heading")
+        self._also = label("Good to know", "heading")
         parts: tuple[QWidget, ...] = (
             self._before,
             self.findings,
@@ -125,6 +130,8 @@ class RecipePanel(QWidget):
             label("How", "heading"),
             settings,
             self.notes,
+            self._also,
+            self.remarks,
         )
         for place, part in enumerate(parts):
             column.insertWidget(place, part)
@@ -135,9 +142,12 @@ class RecipePanel(QWidget):
     def refresh(self) -> None:
         """Show the recipe, its faults, its costs and the findings before the run."""
         desk, recipe = self._desk, self._desk.brief.recipe
-        self.findings.show_findings(desk.check)
-        for part in (self._before, self.findings):
-            part.setVisible(bool(desk.check))
+        grave = tuple(finding for finding in desk.check if finding.severity != "note")
+        light = tuple(finding for finding in desk.check if finding.severity == "note")
+        for heading, view, found in ((self._before, self.findings, grave), (self._also, self.remarks, light)):
+            view.show_findings(found)
+            view.setVisible(bool(found))
+            heading.setVisible(bool(found))
         self.ladder.refresh()
         self._show_basis(recipe.basis)
         for key, combo in self.combos.items():

@@ -1,8 +1,17 @@
-"""One species as a card: picture, name, formula, charge, multiplicity in words, and what is wrong with them."""
+"""One species as a card: picture, name, formula, charge, multiplicity in words, and their faults."""
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtGui import QFocusEvent, QMouseEvent
-from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLineEdit, QSpinBox, QToolButton, QVBoxLayout, QWidget
+from PySide6.QtGui import QFocusEvent, QKeyEvent, QMouseEvent, QWheelEvent
+from PySide6.QtWidgets import (
+    QGridLayout,
+    QHBoxLayout,
+    QLineEdit,
+    QMenu,
+    QSpinBox,
+    QToolButton,
+    QVBoxLayout,
+    QWidget,
+)
 
 from plumbrule_core.documents.faults import Fault
 from plumbrule_core.documents.species import Species, spin_words
@@ -28,6 +37,7 @@ class SpeciesCard(Card):
         self.name.setMaxLength(80)
         self.name.setAccessibleName("Name of the species")
         self.name.editingFinished.connect(self._renamed)
+        self.more = self._menu_button()
         self.formula = label("", "muted")
         self.charge = _box(-20, 20, "Charge")
         self.charge.valueChanged.connect(lambda value: self.change_wanted.emit(self._name, "charge", value))
@@ -40,40 +50,48 @@ class SpeciesCard(Card):
         self._arrange()
 
     def _arrange(self) -> None:
+        names = QHBoxLayout()
+        names.setSpacing(2)
+        names.addWidget(self.name, 1)
+        names.addWidget(self.more)
+        titles = QVBoxLayout()
+        titles.setSpacing(4)
+        titles.addLayout(names)
+        titles.addWidget(self.formula)
+        titles.addStretch(1)
         top = QHBoxLayout()
         top.setSpacing(10)
         top.addWidget(self.picture)
-        titles = QVBoxLayout()
-        titles.setSpacing(4)
-        row = QHBoxLayout()
-        row.setSpacing(2)
-        row.addWidget(self.name, 1)
-        for text, tip, signal in (("\u29c9", "Copy", self.copy_wanted), ("\u2715", "Remove", self.remove_wanted)):
-            button = QToolButton(text=text)
-            button.setProperty("role", "quiet")
-            button.setToolTip(f"{tip} this species")
-            button.setAccessibleName(f"{tip} this species")
-            button.clicked.connect(lambda _=False, each=signal: each.emit(self._name))
-            row.addWidget(button)
-        titles.addLayout(row)
-        titles.addWidget(self.formula)
-        titles.addStretch(1)
         top.addLayout(titles, 1)
         self.column.addLayout(top)
         self.column.addWidget(self.faults[""])
         fields = QGridLayout()
-        fields.setHorizontalSpacing(8)
-        fields.setVerticalSpacing(4)
-        fields.setColumnStretch(1, 1)
-        fields.setColumnStretch(3, 1)
-        for column, (words, field) in enumerate((("Charge", self.charge), ("Multiplicity", self.multiplicity))):
-            caption = label(words, wrap=False)
+        fields.setHorizontalSpacing(10)
+        fields.setVerticalSpacing(2)
+        for column, (words, field) in enumerate(
+            (("Charge", self.charge), ("Multiplicity", self.multiplicity))
+        ):
+            caption = label(words, "muted", wrap=False)
             caption.setBuddy(field)
-            fields.addWidget(caption, 0, 2 * column)
-            fields.addWidget(field, 0, 2 * column + 1)
+            fields.addWidget(caption, 0, column)
+            fields.addWidget(field, 1, column)
+            fields.setColumnStretch(column, 1)
         self.column.addLayout(fields)
         for line in (self.words, self.faults["charge"], self.faults["multiplicity"]):
             self.column.addWidget(line)
+
+    def _menu_button(self) -> QToolButton:
+        button = QToolButton()
+        button.setText("\u22ef")
+        button.setProperty("role", "quiet")
+        button.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
+        button.setToolTip("Copy or remove this species")
+        button.setAccessibleName("Copy or remove this species")
+        menu = QMenu(button)
+        menu.addAction("Copy").triggered.connect(lambda: self.copy_wanted.emit(self._name))
+        menu.addAction("Remove").triggered.connect(lambda: self.remove_wanted.emit(self._name))
+        button.setMenu(menu)
+        return button
 
     def show_species(self, species: Species, faults: tuple[Fault, ...], read_only: bool) -> None:
         """Show this species with the faults that stand at it."""
@@ -127,6 +145,13 @@ class SpeciesCard(Card):
         super().mousePressEvent(event)
         self.chosen.emit(self._name)
 
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Delete removes the species of the card that has the keyboard."""
+        if event.key() == Qt.Key.Key_Delete and not self.name.isReadOnly():
+            self.remove_wanted.emit(self._name)
+        else:
+            super().keyPressEvent(event)
+
     def focusInEvent(self, event: QFocusEvent) -> None:
         """Reaching the card by keyboard chooses it."""
         super().focusInEvent(event)
@@ -136,8 +161,9 @@ class SpeciesCard(Card):
 class _Calm(QSpinBox):
     """A spin box that a wheel over the list does not change by accident."""
 
-    def wheelEvent(self, event: object) -> None:
-        event.ignore()  # type: ignore[attr-defined]
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        """Leave the wheel to the list."""
+        event.ignore()
 
 
 def _box(low: int, high: int, name: str) -> QSpinBox:
@@ -145,4 +171,5 @@ def _box(low: int, high: int, name: str) -> QSpinBox:
     box.setKeyboardTracking(False)
     box.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
     box.setAccessibleName(name)
+    box.setMinimumWidth(70)
     return box

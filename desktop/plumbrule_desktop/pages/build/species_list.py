@@ -24,7 +24,9 @@ class SpeciesList(QWidget):
         self.smiles = QLineEdit()
         self.smiles.setPlaceholderText("SMILES, then Enter")
         self.smiles.setAccessibleName("SMILES of a molecule")
-        self.smiles.setToolTip("A molecule as SMILES, for instance NN for hydrazine; its shape is built for you")
+        self.smiles.setToolTip(
+            "A molecule as SMILES, for instance NN for hydrazine; its shape is built for you"
+        )
         self.smiles.returnPressed.connect(lambda: self._from_smiles(intake))
         self.paste_button = QPushButton("Paste")
         self.paste_button.setToolTip("Put in the molecule on the clipboard (Ctrl+V)")

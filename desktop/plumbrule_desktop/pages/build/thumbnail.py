@@ -1,11 +1,10 @@
 """The little picture on a species' card."""
 
 from PySide6.QtCore import QSize
-from PySide6.QtGui import QColor, QPainter, QPaintEvent
+from PySide6.QtGui import QPainter, QPaintEvent
 from PySide6.QtWidgets import QSizePolicy, QWidget
 
 from plumbrule_core.documents.species import Species
-from plumbrule_desktop.look import colours
 from plumbrule_desktop.scene.build import Scene, build
 from plumbrule_desktop.scene.camera import Camera
 from plumbrule_desktop.scene.flat import paint_flat
@@ -38,5 +37,5 @@ class Thumbnail(QWidget):
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         camera = Camera().fitted(self._scene, 1.0)
-        paint_flat(painter, self._scene, camera, (self.width(), self.height()), QColor(colours(self).text))
+        paint_flat(painter, self._scene, camera, (self.width(), self.height()))
         painter.end()

@@ -84,7 +84,7 @@ class Session:
         session = cls.open(None)
         for path in demo_questions():
             session.add_brief(question_file.read_question(path), "Open the demo")
-        session._casebook.forget_history()
+        session.forget_history()
         return session
 
     @property
@@ -142,6 +142,10 @@ class Session:
     def redo(self) -> str | None:
         """Make the step again; returns its label."""
         return self._casebook.redo()
+
+    def forget_history(self) -> None:
+        """Make what was done so far the beginning: undo does not go behind it."""
+        self._casebook.forget_history()
 
     @property
     def undo_label(self) -> str | None:

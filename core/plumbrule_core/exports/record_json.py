@@ -98,7 +98,8 @@ def _array(record: Record, result: Result, name: str) -> np.ndarray | None:
 
 def _task(row: TaskRow) -> Data:
     result, forecast = row.result, row.task.forecast
-    return _present(
+    trace = [[value for value in point if value is not None] for point in row.state.trace]
+    return {"trace": trace} | _present(
         id=row.task.id,
         species=row.task.spec.species.name,
         rung=row.task.spec.rung,
@@ -114,7 +115,6 @@ def _task(row: TaskRow) -> Data:
         iterations=result.iterations if result is not None else None,
         notes=list(result.notes) if result is not None else [],
         used=dict(result.used) if result is not None else {},
-        trace=[[value for value in point if value is not None] for point in row.state.trace],
     )
 
 

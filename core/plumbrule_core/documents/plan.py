@@ -84,7 +84,7 @@ class Task(Document):
     """One calculation on one species: what is run, stored and carried on. `id` is the spec's identity.
 
     Tasks with the same `chain` (one species at one level) run in one worker, one after the other,
-    and share its integrals.
+    and share its integrals. `needs` names the rungs of the chain that this one stands on.
     """
 
     id: str

@@ -34,6 +34,11 @@ def worker_command() -> tuple[str, ...]:
 def environment(order: Order, scratch: Path) -> Mapping[str, str]:
     """The child's environment: thread counts must be there before any library is loaded."""
     variables = {name: value for name, value in os.environ.items() if name != "PYSCF_EXT_PATH"}
+    # The worker stands in another folder, where a relative path would mean another place.
+    paths = [
+        str(Path(path).absolute()) for path in os.environ.get("PYTHONPATH", "").split(os.pathsep) if path
+    ]
+    variables |= {"PYTHONPATH": os.pathsep.join(paths)}
     variables |= {name: str(order.threads) for name in _THREAD_VARIABLES}
     # Threads that spin while they wait slow a busy machine down twenty times.
     variables |= {"OMP_WAIT_POLICY": "PASSIVE", "KMP_BLOCKTIME": "0", "OMP_DYNAMIC": "FALSE"}
@@ -117,6 +122,8 @@ class Child:
 
     def wait(self) -> int:
         """Wait for the end; returns the exit status, negative for a signal. Ends left children too."""
+        if self._gone:
+            return self._process.wait()
         if sys.platform == "linux":
             # Not reaped yet: until then nobody else can get the number of this process group.
             os.waitid(os.P_PID, self.pid, os.WEXITED | os.WNOWAIT)

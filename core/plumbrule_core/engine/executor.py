@@ -47,7 +47,7 @@ class Executor(Protocol):
         """Start one order.
 
         `on_event` gets its events one by one, from a thread of the executor; `on_end` is called
-        exactly once, after the last event, whatever happens.
+        exactly once, after the last event and before `wait` returns, whatever happens.
         """
 
 
@@ -124,17 +124,22 @@ class LocalHandle:
         ending: Ending = "failed"
         try:
             ending = self._work()
-        except Exception:
+        except Exception as error:
             _log.exception("the supervision of a worker broke")
             if self._child is not None:
                 self._child.kill()
+                self._child.wait()
+                self._child.close()
+            self._hearing.refuse(f"the supervision of the worker broke: {error}")
         finally:
             self._ending = ending
             self._exited.set()
             self._ready.set()
-            self._ended.set()
-            if self._on_end is not None:
-                self._on_end(ending)
+            try:
+                if self._on_end is not None:
+                    self._on_end(ending)
+            finally:
+                self._ended.set()
 
     def _work(self) -> Ending:
         try:
@@ -153,12 +158,18 @@ class LocalHandle:
         return self._hearing.end(status, asked=self._asked, details=details)
 
     def _read(self, child: Child) -> None:
-        for line in child.lines():
-            try:
+        try:
+            for line in child.lines():
                 self._hearing.hear(line)
-            except Unfit as refusal:
-                self._hearing.refuse(str(refusal))
-                child.kill()
+        except Unfit as refusal:
+            self._give_up(child, str(refusal))
+        except Exception as error:
+            _log.exception("the reading of a worker's messages broke")
+            self._give_up(child, f"the worker's messages could not be read any more: {error}")
+
+    def _give_up(self, child: Child, reason: str) -> None:
+        self._hearing.refuse(reason)
+        child.kill()
 
     def _deliver(self, event: Event) -> None:
         try:

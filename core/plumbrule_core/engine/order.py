@@ -51,5 +51,5 @@ class Order(Document):
         return Path(self.shelf) / f"{self.digest}.log"
 
     def needs(self, task: Task) -> Iterator[Task]:
-        """The tasks of this chain that one task stands on directly."""
-        return (other for other in self.tasks if other.id in task.needs)
+        """The tasks of this chain that one task stands on, in the order they are run."""
+        return (other for other in self.tasks if other.spec.rung in task.needs)

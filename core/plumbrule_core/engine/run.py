@@ -142,6 +142,7 @@ def run_plan(
     with so many threads and MB. A chain that fails or dies stops no other. Checkpoints and arrays go
     to `cache`.
     """
+    cache = cache.absolute()
     orders = tuple(
         Order(
             tasks=chain,

@@ -47,7 +47,11 @@ def _task(rung: str, *needs: Task, name: str = "water", chain: str = "", basis: 
     )
     cost = Forecast(seconds=1, seconds_low=0.5, seconds_high=2, memory_mb=100)
     return Task(
-        id=spec.identity, spec=spec, needs=tuple(t.id for t in needs), chain=chain or name, forecast=cost
+        id=spec.identity,
+        spec=spec,
+        needs=tuple(t.spec.rung for t in needs),
+        chain=chain or name,
+        forecast=cost,
     )
 
 

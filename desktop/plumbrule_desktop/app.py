@@ -1,6 +1,7 @@
 """The program with a window: `main` opens it and returns the exit status."""
 
 import argparse
+import os
 import sys
 import traceback
 from collections.abc import Callable, Sequence
@@ -10,7 +11,7 @@ from types import TracebackType
 from PySide6.QtWidgets import QApplication
 
 from plumbrule_desktop import look
-from plumbrule_desktop.scene.three_d import PROBE_FLAG
+from plumbrule_desktop.scene.three_d import PROBE_VARIABLE
 from plumbrule_desktop.settings import Settings
 from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.window import Window
@@ -19,7 +20,7 @@ from plumbrule_desktop.window import Window
 def main(argv: Sequence[str] | None = None) -> int:
     """Open the window: empty, on the demo (`--demo`), or on a casebook. `argv` lacks the program's name."""
     arguments = list(sys.argv[1:] if argv is None else argv)
-    if PROBE_FLAG in arguments:
+    if os.environ.get(PROBE_VARIABLE):
         from plumbrule_desktop.scene.probe import draw_one_frame
 
         return draw_one_frame()

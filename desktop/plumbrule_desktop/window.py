@@ -1,6 +1,7 @@
 """The window: the shell at once, the pages after the first paint, and an orderly end."""
 
 from collections.abc import Callable
+from functools import partial
 from pathlib import Path
 
 from PySide6.QtCore import QEvent, QObject, Qt, QTimer
@@ -12,7 +13,6 @@ from PySide6.QtWidgets import (
     QMainWindow,
     QMenu,
     QMessageBox,
-    QStackedWidget,
     QVBoxLayout,
     QWidget,
 )
@@ -20,6 +20,8 @@ from PySide6.QtWidgets import (
 from plumbrule_desktop import look
 from plumbrule_desktop.about import about_text
 from plumbrule_desktop.actions import CHOOSER_KEYS, make_actions
+from plumbrule_desktop.leaving import Leaving
+from plumbrule_desktop.page_stack import PAGES, PageStack
 from plumbrule_desktop.plumb_line import PlumbLine
 from plumbrule_desktop.question_line import QuestionLine
 from plumbrule_desktop.scene.three_d import ThreeD
@@ -28,9 +30,7 @@ from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.widgets.banner import Banner
 from plumbrule_desktop.widgets.segments import Segments
 
-PAGES = ("build", "watch", "judge", "report")
 CASEBOOKS = "Casebooks (*.plumb)"
-CLOSE_POLL_MS = 100
 
 
 class Window(QMainWindow):
@@ -43,15 +43,16 @@ class Window(QMainWindow):
         self.three_d = ThreeD(settings, self)
         self._begin = begin
         self._painted = False
-        self._leaving = False
+        self._ended = False
         self.resize(1280, 800)
         self.setMinimumSize(900, 600)
         self.setAcceptDrops(False)
         self.banner = Banner()
         self.question_line = QuestionLine(self.desk)
         self.segments = Segments((name.capitalize() for name in PAGES), "Pages")
-        self.stack = QStackedWidget()
-        self.pages: dict[str, QWidget] = {}
+        self.stack = PageStack(self.desk, self.three_d)
+        self.stack.page_wanted.connect(lambda name: self.show_page(PAGES.index(name)))
+        self.leaving = Leaving(self)
         self.plumb_line = PlumbLine(self.desk)
         self._compose()
         self.actions_by_key = make_actions(self, self._slots())
@@ -65,9 +66,6 @@ class Window(QMainWindow):
     # putting it together
 
     def _compose(self) -> None:
-        self._empty = [QWidget() for _ in PAGES]
-        for empty in self._empty:
-            self.stack.addWidget(empty)
         switch = QHBoxLayout()
         switch.setContentsMargins(14, 8, 14, 4)
         switch.addWidget(self.segments)
@@ -145,55 +143,36 @@ class Window(QMainWindow):
         if event.type() == QEvent.Type.Paint and not self._painted:
             self._painted = True
             watched.removeEventFilter(self)
-            self._stages = iter((self._make_build, self._start, *(self._maker(place) for place in (1, 2, 3))))
+            make: list[Callable[[], object]] = [partial(self.stack.page, name) for name in PAGES]
+            self._stages = iter((make[0], self._start, *make[1:]))
             QTimer.singleShot(0, self, self._next_stage)
         return super().eventFilter(watched, event)
 
     def _next_stage(self) -> None:
         stage = next(self._stages, None)
-        if stage is not None and not self._leaving:
+        if stage is not None and not self._ended:
             stage()
             QTimer.singleShot(0, self, self._next_stage)
+
+    @property
+    def pages(self) -> dict[str, QWidget]:
+        """The pages made so far, by name."""
+        return self.stack.made
 
     @property
     def furnished(self) -> bool:
         """Whether every page is there."""
         return len(self.pages) == len(PAGES)
 
-    def _make_build(self) -> None:
-        self._page(0)
-
     def _start(self) -> None:
         self._begin(self.desk)
         self.three_d.ask()
-
-    def _maker(self, place: int) -> Callable[[], None]:
-        def make() -> None:
-            self._page(place)
-
-        return make
-
-    def _page(self, place: int) -> QWidget:
-        name = PAGES[place]
-        if name not in self.pages:
-            page = _MAKE[name](self)
-            self.pages[name] = page
-            wanted = getattr(page, "page_wanted", None)
-            if wanted is not None:
-                wanted.connect(lambda name: self.show_page(PAGES.index(name)))
-            empty = self._empty[place]
-            current = self.stack.currentIndex()
-            self.stack.insertWidget(place, page)
-            self.stack.removeWidget(empty)
-            empty.deleteLater()
-            self.stack.setCurrentIndex(current)
-        return self.pages[name]
 
     # what people do
 
     def show_page(self, place: int) -> None:
         """Switch to a page, made now where it is not there yet."""
-        self._page(place)
+        self.stack.page(PAGES[place])
         self.stack.setCurrentIndex(place)
         self.segments.show_current(place)
         self.actions_by_key[PAGES[place]].setChecked(True)
@@ -286,98 +265,19 @@ class Window(QMainWindow):
 
     def closeEvent(self, event: QCloseEvent) -> None:
         """Ask where something would be lost; else end everything in order."""
-        if self._leaving:
-            event.accept()
-        elif self.desk.running:
-            event.ignore()
-            self._ask_stop()
-        elif self.desk.casebook.path is None and self.desk.casebook.undo_label is not None:
-            event.ignore()
-            self._ask_keep()
-        else:
+        if self._ended or not self.leaving.asks():
             self.end()
             event.accept()
-
-    def _ask_stop(self) -> None:
-        box = self._box("A run is under way.", "Stop it and close? What was computed stays in the casebook.")
-        stop = box.addButton("Stop and close", QMessageBox.ButtonRole.AcceptRole)
-        box.addButton("Keep running", QMessageBox.ButtonRole.RejectRole)
-        stop.clicked.connect(self.stop_and_close)
-        box.open()
-
-    def _ask_keep(self) -> None:
-        box = self._box(
-            "This casebook is not saved.", "It is gone when the window closes, unless you save it."
-        )
-        save = box.addButton("Save\u2026", QMessageBox.ButtonRole.AcceptRole)
-        leave = box.addButton("Close without saving", QMessageBox.ButtonRole.DestructiveRole)
-        box.addButton("Cancel", QMessageBox.ButtonRole.RejectRole)
-        save.clicked.connect(lambda: self.ask_save(then=self.leave))
-        leave.clicked.connect(self.leave)
-        box.open()
-
-    def _box(self, headline: str, says: str) -> QMessageBox:
-        box = QMessageBox(QMessageBox.Icon.NoIcon, "Plumbrule", headline, parent=self)
-        box.setAttribute(Qt.WidgetAttribute.WA_DeleteOnClose)
-        box.setInformativeText(says)
-        return box
-
-    def stop_and_close(self) -> None:
-        """Stop the run, wait for its end without holding up the window, then close."""
-        self.desk.stop()
-        if self.desk.running:
-            self.banner.say("Stopping the run; the window closes by itself.", "note")
-            QTimer.singleShot(CLOSE_POLL_MS, self, self.stop_and_close)
         else:
-            self.close()
-
-    def leave(self) -> None:
-        """Close without asking."""
-        self.end()
-        self.close()
+            event.ignore()
 
     def end(self) -> None:
         """End pages, the probe and the desk; the window shows nothing new afterwards."""
-        if self._leaving:
+        if self._ended:
             return
-        self._leaving = True
+        self._ended = True
         self.settings.geometry = self.saveGeometry()
         self.settings.sync()
-        for page in self.pages.values():
-            page.close()
+        self.stack.close_pages()
         self.three_d.close()
         self.desk.close()
-
-
-def _build(window: Window) -> QWidget:
-    from plumbrule_desktop.pages.build.page import BuildPage
-
-    return BuildPage(window.desk, window.three_d)
-
-
-def _watch(window: Window) -> QWidget:
-    from plumbrule_desktop.pages.watch import WatchPage
-
-    page = WatchPage(window.desk)
-    page.page_wanted.connect(lambda name: window.show_page(PAGES.index(name)))
-    return page
-
-
-def _judge(window: Window) -> QWidget:
-    from plumbrule_desktop.pages.judge import JudgePage
-
-    return JudgePage(window.desk)
-
-
-def _report(window: Window) -> QWidget:
-    from plumbrule_desktop.pages.report import ReportPage
-
-    return ReportPage(window.desk)
-
-
-_MAKE: dict[str, Callable[[Window], QWidget]] = {
-    "build": _build,
-    "watch": _watch,
-    "judge": _judge,
-    "report": _report,
-}

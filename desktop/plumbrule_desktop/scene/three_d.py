@@ -11,8 +11,8 @@ from plumbrule_desktop.settings import Settings
 
 YES = "yes"
 PROBE_MS = 30_000
-PROBE_FLAG = "--probe-3d"
-"""A frozen program has no interpreter to hand the probe's file to: it is started again with this flag."""
+PROBE_VARIABLE = "PLUMBRULE_PROBE_3D"
+"""A frozen program has no interpreter to hand the probe to: it is started again with this variable set."""
 
 
 def force_software_path() -> None:
@@ -51,6 +51,7 @@ class ThreeD(QObject):
         self._process = QProcess(self)
         environment = QProcessEnvironment.systemEnvironment()
         environment.insert("VTK_DEFAULT_OPENGL_WINDOW", os.environ.get("VTK_DEFAULT_OPENGL_WINDOW", ""))
+        environment.insert(PROBE_VARIABLE, "1")
         self._process.setProcessEnvironment(environment)
         self._process.finished.connect(self._finished)
         self._process.errorOccurred.connect(self._could_not_start)
@@ -90,7 +91,7 @@ class ThreeD(QObject):
 
 def _command() -> list[str]:
     if getattr(sys, "frozen", False):
-        return [sys.executable, PROBE_FLAG]
+        return [sys.executable]
     return [sys.executable, str(Path(__file__).with_name("probe.py"))]
 
 

@@ -1,7 +1,7 @@
 """The run of a question, as the window follows it. QtCore only."""
 
 import threading
-from typing import TYPE_CHECKING
+from typing import Literal, Protocol
 
 from PySide6.QtCore import QObject, QTimer
 
@@ -11,11 +11,26 @@ from plumbrule_core.documents.run_state import RunState
 from plumbrule_core.errors import PlumbruleError
 from plumbrule_desktop.state.kept import Kept
 
-if TYPE_CHECKING:
-    from plumbrule_core.engine import Run
-
 TICK_MS = 100
 """Events are handed on in batches, ten times a second."""
+
+
+class Run(Protocol):
+    """What the session gives back for a run."""
+
+    @property
+    def running(self) -> bool:
+        """Whether the end is still to come."""
+
+    @property
+    def outcome(self) -> Literal["done", "failed", "stopped"] | None:
+        """How it ended, None while it runs."""
+
+    def stop(self) -> None:
+        """Ask it to stop; never waits."""
+
+    def wait(self, timeout: float | None = None) -> bool:
+        """Wait for the end; raises what broke the run."""
 
 
 class Running(Kept):
@@ -63,7 +78,7 @@ class Running(Kept):
         if self._run is not None:
             self._run.stop()
 
-    def _started(self, run: "Run") -> None:
+    def _started(self, run: Run) -> None:
         self._starting, self._run = False, run
         if self._stop_asked:
             run.stop()
@@ -88,7 +103,7 @@ class Running(Kept):
         if ended or any(isinstance(event, Finished) for event in events):
             self._rejudge()
 
-    def _ended(self, run: "Run") -> None:
+    def _ended(self, run: Run) -> None:
         self._timer.stop()
         self._run, self._running_id = None, None
         self._reload_state(frozenset())

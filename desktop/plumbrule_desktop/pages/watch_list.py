@@ -101,9 +101,9 @@ class TaskList(QTreeView):
         self.setIndentation(14)
         self.setMinimumSize(260, 170)
         header = self.header()
-        header.setStretchLastSection(False)
+        header.setStretchLastSection(True)
         header.setMinimumSectionSize(60)
-        for column, width in ((Column.TASK, 140), (Column.STATE, 122), (Column.PROGRESS, 104)):
+        for column, width in ((Column.TASK, 140), (Column.STATE, 136), (Column.PROGRESS, 98)):
             header.resizeSection(column, width)
         header.setSectionResizeMode(Column.TASK, QHeaderView.ResizeMode.Interactive)
         model.modelReset.connect(self.unfold)
@@ -111,5 +111,5 @@ class TaskList(QTreeView):
     def unfold(self) -> None:
         """Show every task, and as much of each column as it needs."""
         self.expandAll()
-        for column in (Column.TASK, Column.TIME, Column.MEMORY):
+        for column in (Column.TASK, Column.TIME):
             self.resizeColumnToContents(column)

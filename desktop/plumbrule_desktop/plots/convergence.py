@@ -34,15 +34,17 @@ class PowerAxis(pg.AxisItem):
 class _Track:
     """One curve with its goal, in one plot of the two."""
 
-    def __init__(self, layout: pg.GraphicsLayoutWidget, row: int, symbol: str) -> None:
+    def __init__(self, layout: pg.GraphicsLayoutWidget, row: int, symbol: str, title: str) -> None:
+        self._title = title
         self.plot = layout.addPlot(row=row, col=0, axisItems={"left": PowerAxis("left")})
         self.plot.setMenuEnabled(False)
         self.plot.setMouseEnabled(False, False)
         self.plot.hideButtons()
         self.plot.disableAutoRange()
         self.plot.showGrid(x=True, y=True, alpha=0.25)
-        self.plot.getAxis("left").setWidth(74)
+        self.plot.getAxis("left").setWidth(52)
         self.curve = self.plot.plot(symbol=symbol, symbolSize=6, antialias=True)
+        self.curve.scatter.opts["useCache"] = False  # points as lines, not as pixels, in a saved drawing
         self.goal = pg.InfiniteLine(angle=0)
         self.cursor = pg.InfiniteLine(angle=90)
         for line in (self.goal, self.cursor):
@@ -57,6 +59,7 @@ class _Track:
             axis.setPen(pg.mkPen(c.line))
             axis.setTextPen(pg.mkPen(c.muted))
             axis.setTickFont(_small(widget.font()))
+        self.plot.setTitle(self._title, color=c.text, size="9pt", justify="left")
         self.curve.setPen(pg.mkPen(colour, width=2))
         self.curve.setSymbolPen(pg.mkPen(colour))
         self.curve.setSymbolBrush(pg.mkBrush(c.surface))
@@ -83,13 +86,14 @@ class ConvergencePlot(pg.GraphicsLayoutWidget):
         super().__init__(parent)
         self.setAccessibleName("Convergence of the chosen task")
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
-        self.setMinimumHeight(250)
+        self.setMinimumHeight(215)
         self.setFrameStyle(0)
         self._data = convergence(())
         self._at = 0
-        self._tracks = (_Track(self, 0, "o"), _Track(self, 1, "t"))
-        self._tracks[0].plot.setLabel("left", "Change (hartree)")
-        self._tracks[1].plot.setLabel("left", "Residual")
+        self._tracks = (
+            _Track(self, 0, "o", "Change of energy, hartree"),
+            _Track(self, 1, "t", "Residual norm"),
+        )
         self._tracks[0].plot.getAxis("bottom").setStyle(showValues=False)
         self._tracks[1].plot.setLabel("bottom", "Iteration")
         self._pace = Pace(self, self._redraw)

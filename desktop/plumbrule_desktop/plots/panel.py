@@ -93,6 +93,11 @@ class PlotPanel(QWidget):
         """The picture."""
         return self._plot
 
+    @property
+    def detail_text(self) -> str:
+        """The line under the picture."""
+        return self._detail.text()
+
     def name_picture(self, title: str) -> None:
         """What a saved picture is called from now on."""
         self._title = title

@@ -34,5 +34,7 @@ def _save_svg(widget: QWidget, path: Path, title: str) -> None:
     painter = QPainter()
     if not painter.begin(generator):
         raise OSError(f"The picture could not be written to {path}.")
-    widget.render(painter, QPoint(0, 0))
-    painter.end()
+    try:
+        QWidget.render(widget, painter, QPoint(0, 0))  # a graphics view's own render draws its scene alone
+    finally:
+        painter.end()

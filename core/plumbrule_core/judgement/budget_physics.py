@@ -2,12 +2,11 @@
 
 import math
 
-from plumbrule_core.documents.bonding import bonds
 from plumbrule_core.documents.findings import BudgetLine
 from plumbrule_core.documents.species import Species
 from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.judgement.budget_tables import TABLES, column, in_unit, size_factor
-from plumbrule_core.judgement.case import Case
+from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.geometry_origin import origin_of
 from plumbrule_core.units import ANGSTROM_PER_BOHR, convert
 
@@ -85,7 +84,8 @@ def heaviest(case: Case) -> int:
 def geometry_line(case: Case) -> BudgetLine | None:
     """The strain of geometries that are not at their minimum: half k d^2 a bond, by where they came from."""
     table = TABLES["geometry"]
-    strains = [part.coefficient * strain(part.species) for part in case.parts]
+    views = [(part.coefficient, case.view(part.species)) for part in case.parts]
+    strains = [coefficient * strain(view) for coefficient, view in views]
     kcal = convert(math.hypot(*strains), "hartree", "kcal/mol")
     if kcal == 0:
         return None
@@ -107,13 +107,13 @@ def geometry_line(case: Case) -> BudgetLine | None:
     )
 
 
-def strain(species: Species) -> float:
+def strain(view: SpeciesView) -> float:
     """The energy in hartree by which a geometry is expected to lie above its minimum."""
-    table, origin = TABLES["geometry"], origin_of(species)
+    table, origin = TABLES["geometry"], origin_of(view.species)
     displacements = table["displacements"]
     d = displacements.get("unknown" if origin == "cut" else origin, 0.0) / ANGSTROM_PER_BOHR
     k = table["force_constant"] * MILLIDYNE_PER_ANGSTROM
-    return 0.5 * k * d * d * len(bonds(species.atoms))
+    return 0.5 * k * d * d * len(view.bonds)
 
 
 def spin_orbit_line(case: Case) -> BudgetLine | None:

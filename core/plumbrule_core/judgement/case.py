@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from functools import cached_property
 
 from plumbrule_core.basis_sets import Basis, find, frozen_orbitals
+from plumbrule_core.documents.bonding import Bond, bonds
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.plan import Machine, Plan, Settings
 from plumbrule_core.documents.questions import Part, QuestionBase
@@ -72,6 +73,11 @@ class SpeciesView:
     def closed_shell(self) -> bool:
         """Whether no electron is unpaired."""
         return self.species.multiplicity == 1
+
+    @cached_property
+    def bonds(self) -> tuple[Bond, ...]:
+        """Pairs of bonded atoms, numbered from 0."""
+        return bonds(self.species.atoms)
 
     @cached_property
     def has_metal(self) -> bool:

@@ -89,7 +89,7 @@ def singles_grade(view: SpeciesView) -> Grade:
 
 
 def triples_grade(view: SpeciesView, case: Case) -> Grade:
-    """The weight of (T) in the atomisation energy (where atoms were computed) and in the correlation energy."""
+    """The weight of (T) in the atomisation energy, where atoms were computed, and in correlation."""
     shares = ("share_of_triples_raised", "share_of_triples_serious", "share_of_triples_broken")
     return _worst(
         "triples",

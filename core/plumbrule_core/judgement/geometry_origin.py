@@ -1,24 +1,15 @@
 """How well a geometry is known, read from what the species says of its origin."""
 
+import re
 from typing import Literal
 
 from plumbrule_core.documents.species import Species
 
 Origin = Literal["atom", "optimised", "force field", "cut", "unknown"]
 
-_GOOD = (
-    "optimi",
-    "relaxed",
-    "experiment",
-    "measured",
-    "published",
-    "ccsd",
-    "mp2",
-    "b3lyp",
-    "dft",
-    "reference geometry",
-)
-_BUILT = ("smiles", "force field", "mmff", "uff", "built", "drawn")
+_BUILT = re.compile(r"\b(smiles|force field|mmff\w*|uff|built|drawn)\b")
+_GOOD = re.compile(r"\b(optimi[sz]ed|relaxed|experimental|measured|published|minimum)\b")
+_DENIED = re.compile(r"\b(not|never) (optimi[sz]ed|relaxed)\b")
 
 
 def origin_of(species: Species) -> Origin:
@@ -28,8 +19,6 @@ def origin_of(species: Species) -> Origin:
         return "atom"
     if said.startswith("cut from"):
         return "cut"
-    if any(word in said for word in _BUILT):
-        return "force field"
-    if any(word in said for word in _GOOD) and "not " not in said:
+    if _GOOD.search(said) and not _DENIED.search(said):
         return "optimised"
-    return "unknown"
+    return "force field" if _BUILT.search(said) else "unknown"

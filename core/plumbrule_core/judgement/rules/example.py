@@ -23,7 +23,7 @@ class Molecule:
     xyz: str = "N 0 0 0; N 0 0 1.1"
     charge: int = 0
     multiplicity: int = 1
-    origin: str = "optimised at CCSD(T)/cc-pVTZ"
+    origin: str = "optimised with CCSD(T)/cc-pVTZ"
     energies: Mapping[str, float] = field(default_factory=dict)
     readings: Mapping[str, ReadingValue] = field(default_factory=dict)
     notes: tuple[str, ...] = ()

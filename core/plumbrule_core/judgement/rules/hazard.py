@@ -1,6 +1,5 @@
 """Where a number could be used to judge a hazard, say that it does not replace measurement."""
 
-from plumbrule_core.documents.bonding import bonds
 from plumbrule_core.documents.findings import Evidence, Finding
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.rules.base import Rule, each
@@ -16,7 +15,7 @@ def _energetic(case: Case, view: SpeciesView) -> Finding | None:
     one = view.species
     found = [
         pair_name(one, i, j)
-        for i, j in bonds(one.atoms)
+        for i, j in view.bonds
         if len(one.atoms) > 2 and {one.atoms[i].symbol, one.atoms[j].symbol} <= UNEASY
     ]
     if not found:

@@ -1,10 +1,6 @@
 """Geometry: what can be seen before anything is computed."""
 
-from collections.abc import Iterator, Sequence
-
-from plumbrule_core.documents.bonding import unbonded_pieces
 from plumbrule_core.documents.findings import Edit, Evidence, Finding, Remedy
-from plumbrule_core.documents.questions import BondQuestion
 from plumbrule_core.documents.species import Species
 from plumbrule_core.geometry.shape import (
     CLASH_SHARE,
@@ -17,11 +13,9 @@ from plumbrule_core.geometry.shape import (
     twisted_double_bonds,
 )
 from plumbrule_core.judgement.case import Case, SpeciesView
-from plumbrule_core.judgement.geometry_origin import origin_of
 from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import active_space, advice
-from plumbrule_core.judgement.wording import listed
 
 PRACTICE = "common practice, no source"
 
@@ -145,79 +139,12 @@ def _twisted(case: Case, view: SpeciesView) -> Finding | None:
     )
 
 
-def _pieces(case: Case, view: SpeciesView) -> Finding | None:
-    pieces = unbonded_pieces(view.species)
-    if len(pieces) < 2:
-        return None
-    sizes = listed(str(len(piece)) for piece in pieces)
-    return Finding(
-        code="unbonded-pieces",
-        severity="note",
-        species=view.name,
-        headline=f"{view.name} consists of {len(pieces)} pieces that no bond joins.",
-        consequence="Each piece borrows basis functions of the others, which makes them stick together "
-        "too well: up to 2 "
-        "to 3 kcal/mol in double zeta. If this was meant to be one molecule, its geometry is wrong.",
-        evidence=(
-            Evidence(reading="atoms in the pieces", value=sizes, source="own, water dimer in cc-pVDZ"),
-        ),
-        remedies=(advice("For a binding energy, use a large basis set with diffuse functions"),),
-    )
-
-
-def _origin(case: Case, view: SpeciesView) -> Finding | None:
-    if origin_of(view.species) not in ("force field", "unknown"):
-        return None
-    built = origin_of(view.species) == "force field"
-    return Finding(
-        code="geometry-origin",
-        severity="note",
-        species=view.name,
-        headline=(
-            f"The geometry of {view.name} was built by a force field."
-            if built
-            else f"Nobody said where the geometry of {view.name} comes from."
-        ),
-        consequence="What it lies above its minimum is in the number; the budget allows for a typical "
-        "amount.",
-        evidence=(Evidence(reading="origin", value=view.species.origin or "not given", source="arithmetic"),),
-        remedies=(
-            advice("Give a geometry that was optimised with a correlated method or a functional, and say so"),
-        ),
-    )
-
-
-def _unrelaxed(case: Case) -> Iterator[Finding]:
-    question = case.question
-    if not isinstance(question, BondQuestion) or not question.cut:
-        return
-    loose = [one.name for one in case.species if origin_of(one) == "cut"]
-    if not loose:
-        return
-    yield Finding(
-        code="fragments-not-relaxed",
-        severity="note",
-        species=question.species,
-        headline="The fragments keep the shape that they had in the molecule.",
-        consequence="Relaxed fragments lie lower, so a measured bond energy is smaller than this number.",
-        evidence=(Evidence(reading="fragments", value=listed(loose)),),
-        remedies=(
-            advice("Give the optimised fragments as species of their own and name them in the question"),
-        ),
-    )
-
-
 def _ethylene(twist: str) -> Example:
     return Example(molecules={"ethylene": Molecule(xyz=twist)})
 
 
-def _one(xyz: str, origin: str = "optimised at CCSD(T)/cc-pVTZ") -> Example:
-    return Example(molecules={"molecule": Molecule(xyz=xyz, origin=origin)})
-
-
-def _cut(xyz: str, cut: Sequence[int]) -> Example:
-    molecule = Molecule(xyz=xyz)
-    return Example(molecules={"m": molecule}, question={"kind": "bond", "species": "m", "cut": list(cut)})
+def _one(xyz: str) -> Example:
+    return Example(molecules={"molecule": Molecule(xyz=xyz)})
 
 
 _WATER = "O 0 0 0.1173; H 0 0.7572 -0.4692; H 0 -0.7572 -0.4692"
@@ -225,7 +152,6 @@ _WATER_IN_BOHR = "O 0 0 0.2217; H 0 1.4309 -0.8867; H 0 -1.4309 -0.8867"
 _PEROXIDE = "O 0 0.7264 -0.0555; O 0 -0.7264 -0.0555; H 0.8 0.88 0.444; H -0.8 -0.88 0.444"
 _FLAT = "C 0 0 0; C 0 0 1.339; H 0 0.929 -0.565; H 0 -0.929 -0.565; H 0 0.929 1.904; H 0 -0.929 1.904"
 _TWISTED = "C 0 0 0; C 0 0 1.339; H 0 0.929 -0.565; H 0 -0.929 -0.565; H 0.929 0 1.904; H -0.929 0 1.904"
-_DIMER = f"{_WATER}; O 0 0 3.1173; H 0 0.7572 2.5308; H 0 -0.7572 2.5308"
 
 RULES = (
     Rule(
@@ -267,35 +193,5 @@ RULES = (
         judge=each(_twisted),
         quiet=(_ethylene(_FLAT), _one(_PEROXIDE)),
         loud=(_ethylene(_TWISTED),),
-    ),
-    Rule(
-        code="unbonded-pieces",
-        severity="note",
-        stage="always",
-        reads=("atoms",),
-        source="own, water dimer in cc-pVDZ",
-        judge=each(_pieces),
-        quiet=(_one(_WATER),),
-        loud=(_one(_DIMER),),
-    ),
-    Rule(
-        code="geometry-origin",
-        severity="note",
-        stage="always",
-        reads=("origin",),
-        source="arithmetic",
-        judge=each(_origin),
-        quiet=(_one(_WATER), _one("N 0 0 0", "")),
-        loud=(_one(_WATER, ""), _one(_WATER, "built from SMILES by a force field")),
-    ),
-    Rule(
-        code="fragments-not-relaxed",
-        severity="note",
-        stage="always",
-        reads=("the cut",),
-        source="arithmetic",
-        judge=_unrelaxed,
-        quiet=(Example(), _cut("N 0 0 0; N 0 0 1.1", (1, 2))),
-        loud=(_cut(_PEROXIDE, (1, 2)),),
     ),
 )

@@ -1,0 +1,113 @@
+"""The verdict while results come in, and when a rung is lost."""
+
+from collections.abc import Callable
+from dataclasses import replace
+
+from plumbrule_core.documents.findings import Judgement
+from plumbrule_core.judgement import judge
+from plumbrule_core.judgement.case import Case
+from plumbrule_core.judgement.rules.example import Example, Molecule, case_of
+
+LADDER = {"HF": -108.95, "MP2": -109.25, "CCSD": -109.263, "CCSD(T)": -109.275}
+ATOM = {"HF": -54.39, "MP2": -54.46, "CCSD": -54.478, "CCSD(T)": -54.4785}
+BOND = {"kind": "bond", "species": "n2", "fragments": ["n", "n"], "unit": "kcal/mol", "within": 500.0}
+
+
+def nitrogen() -> Case:
+    atom = Molecule(xyz="N 0 0 0", multiplicity=4, energies=ATOM)
+    return case_of(Example(molecules={"n2": Molecule(energies=LADDER), "n": atom}, question=BOND))
+
+
+def kept(case: Case, *rungs: str) -> Judgement:
+    some = {key: result for key, result in case.results.items() if result.rung in rungs}
+    return judge(case.brief, case.plan, some)
+
+
+def test_nothing_is_known_before_the_first_result() -> None:
+    found = kept(nitrogen())
+    assert found.verdict.level == "unknown"
+    assert found.answer is None
+    assert found.findings == ()
+    assert {one.verdict.level for one in found.species} == {"unknown"}
+
+
+def test_the_answer_climbs_with_the_rungs_and_is_not_called_sound_before_the_end() -> None:
+    case = nitrogen()
+    for rungs in (("HF", "MP2"), ("HF", "MP2", "CCSD")):
+        found = kept(case, *rungs)
+        assert found.answer is not None
+        assert found.answer.rung == rungs[-1]
+        assert found.verdict.level == "unknown"
+        assert "no result yet" in found.verdict.headline
+    assert kept(case, *LADDER).verdict.level == "sound"
+
+
+def test_one_missing_species_leaves_a_rung_without_an_answer() -> None:
+    case = nitrogen()
+    half = {
+        key: result
+        for key, result in case.results.items()
+        if (result.species, result.rung) != ("n", "CCSD(T)")
+    }
+    answer = judge(case.brief, case.plan, half).answer
+    assert answer is not None
+    assert answer.rung == "CCSD"
+
+
+def test_an_unconverged_ccsd_takes_triples_with_it_and_mp2_stands_with_care() -> None:
+    case = nitrogen()
+    lost = {
+        key: result.model_copy(update={"converged": False}) if result.rung == "CCSD" else result
+        for key, result in case.results.items()
+    }
+    found = judge(case.brief, case.plan, lost)
+    assert found.answer is not None
+    assert found.answer.rung == "MP2"
+    assert found.verdict.level == "take care"
+    assert {one.rung for one in found.comparison if one.stopped} == {"CCSD", "CCSD(T)"}
+
+
+def test_a_diradical_is_known_before_coupled_cluster_has_run(
+    recorded_example: Callable[..., Example],
+) -> None:
+    one = recorded_example(one="ethylene at 90 degrees")
+    case = case_of(one)
+    early = {key: result for key, result in case.results.items() if result.rung in ("HF", "MP2")}
+    trimmed = {
+        key: result.model_copy(
+            update={
+                "readings": tuple(
+                    r for r in result.readings if r.name not in ("largest_t2", "T1", "D1", "D2")
+                )
+            }
+        )
+        for key, result in early.items()
+    }
+    assert judge(case.brief, case.plan, trimmed).verdict.level in ("take care", "do not rely on it")
+
+
+def test_findings_about_the_answers_rung_come_before_others_of_the_same_severity() -> None:
+    case = nitrogen()
+    far = {
+        key: result.model_copy(update={"energy": result.energy - 0.05})
+        if (result.species, result.rung) == ("n2", "MP2")
+        else result
+        for key, result in case.results.items()
+    }
+    tight = case.brief.model_copy(update={"question": case.brief.question.model_copy(update={"within": 1.0})})  # type: ignore[union-attr]
+    found = judge(tight, case.plan, far)
+    codes = [one.code for one in found.findings if one.severity == "care"]
+    assert codes.index("bar-exceeds-target") < codes.index("mp2-far")
+    assert "bar" in found.verdict.headline
+
+
+def test_citations_hold_the_methods_the_limit_and_the_diagnostics_once() -> None:
+    atom = Molecule(xyz="N 0 0 0", multiplicity=4, energies=ATOM)
+    molecule = Molecule(energies=LADDER, readings={"T1": 0.012})
+    one = Example(molecules={"n2": molecule, "n": atom}, question=BOND)
+    case = case_of(replace(one, recipe={"basis": ["cc-pVTZ", "cc-pVQZ"]}))
+    cited = judge(case.brief, case.plan, case.results).citations
+    assert len(set(cited)) == len(cited)
+    for word in ("Raghavachari", "Karton and Martin", "Helgaker", "Lee and Taylor"):
+        assert sum(word in one for one in cited) == 1, word
+    assert not any("practice" in one or "memory" in one for one in cited)

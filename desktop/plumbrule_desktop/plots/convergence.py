@@ -44,7 +44,7 @@ class _Track:
         self.plot.showGrid(x=True, y=True, alpha=0.25)
         self.plot.getAxis("left").setWidth(52)
         self.curve = self.plot.plot(symbol=symbol, symbolSize=6, antialias=True)
-        self.curve.scatter.opts["useCache"] = False  # points as lines, not as pixels, in a saved drawing
+        self.curve.opts["useCache"] = False  # else a saved drawing holds its points as pixels
         self.goal = pg.InfiniteLine(angle=0)
         self.cursor = pg.InfiniteLine(angle=90)
         for line in (self.goal, self.cursor):
@@ -88,6 +88,7 @@ class ConvergencePlot(pg.GraphicsLayoutWidget):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setMinimumHeight(215)
         self.setFrameStyle(0)
+        self.setCacheMode(self.CacheModeFlag.CacheNone)  # else a saved drawing holds its ground as pixels
         self._data = convergence(())
         self._at = 0
         self._tracks = (

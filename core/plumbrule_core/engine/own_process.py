@@ -10,15 +10,19 @@ from pathlib import Path
 import psutil
 
 NICE = 10
+FIRST_TO_GO = 500
+"""Linux ends the process with the highest score when memory runs out: half of all memory on top (proc(5))."""
 _PR_SET_PDEATHSIG = 1
 
 
 def be_polite() -> None:
-    """Give way to everything the user does."""
+    """Give way to everything the user does; where memory runs out, end before the window does."""
     if sys.platform == "win32":
         psutil.Process().nice(psutil.BELOW_NORMAL_PRIORITY_CLASS)
     else:
         os.nice(NICE)
+    if sys.platform == "linux":
+        Path("/proc/self/oom_score_adj").write_text(str(FIRST_TO_GO))
 
 
 def end_with_parent() -> None:

@@ -22,7 +22,6 @@ class ReportPage(QWidget):
         super().__init__(parent)
         self._desk = desk
         self._turn = 0
-        self._writing: Path | None = None
         self.browser = ReportBrowser()
         self.caution = label(HAZARD)
         self.empty = label("", "muted")
@@ -35,7 +34,6 @@ class ReportPage(QWidget):
         self._pace = Pace(self, self._refresh)
         for signal in (desk.brief_changed, desk.plan_changed, desk.judgement_changed, desk.casebook_changed):
             signal.connect(self._pace.ask)
-        desk.message.connect(self._said)
         self._pace.ask()
 
     def _arrange(self) -> None:
@@ -96,14 +94,11 @@ class ReportPage(QWidget):
 
     def export(self, path: Path) -> None:
         """Write the question to a file; a line here says where it went."""
-        self._writing = path
-        self._desk.export(path)
+        self.went.hide()
+        self._desk.export(path, lambda: self._written(path))
 
-    def _said(self, text: str, kind: str) -> None:
-        path, self._writing = self._writing, None
-        if path is None:
-            return
-        self.went.setText(f"Written to {path}" if kind == "note" else text)
+    def _written(self, path: Path) -> None:
+        self.went.setText(f"Written to {path}")
         self.went.show()
 
     def _copy(self) -> None:

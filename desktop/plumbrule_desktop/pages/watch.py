@@ -145,8 +145,9 @@ class WatchPage(QWidget):
         self.bar.setAccessibleDescription(whole.words)
         self._say(_headline(whole), _line(plan, whole))
         self.button.setVisible(True)
-        self.button.setText(_button(whole))
-        self.button.setEnabled(not (self._desk.running and not self._running))
+        stopping = self._running and self._desk.stopping
+        self.button.setText("Stopping\u2026" if stopping else _button(whole))
+        self.button.setEnabled(not stopping and not (self._desk.running and not self._running))
 
     def _say(self, headline: str, line: str) -> None:
         self.headline.setText(headline)

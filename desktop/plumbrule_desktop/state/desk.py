@@ -240,14 +240,18 @@ class Desk(Running):
         if session is not None and brief_id is not None and not self.faults:
             self._clerk.do(lambda: session.report_html(brief_id), then, self._say)
 
-    def export(self, path: Path) -> None:
-        """Write the question in the format that the suffix names."""
+    def export(self, path: Path, then: Callable[[], None] | None = None) -> None:
+        """Write the question in the format that the suffix names; `then` is called once it is written."""
         session, brief_id = self._session, self._brief_id
-        if session is not None and brief_id is not None:
-            done = f"Exported as {path.name}"
-            self._clerk.do(
-                lambda: session.export(brief_id, path), lambda _: self.message.emit(done, "note"), self._say
-            )
+        if session is None or brief_id is None:
+            return
+
+        def written(_: object) -> None:
+            self.message.emit(f"Written to {path}", "note")
+            if then is not None:
+                then()
+
+        self._clerk.do(lambda: session.export(brief_id, path), written, self._say)
 
     def machine(self, then: Callable[[Machine], None]) -> None:
         """Hand what this computer offers to `then`."""

@@ -8,6 +8,7 @@ import subprocess
 import sys
 import time
 from collections.abc import Callable
+from pathlib import Path
 from types import SimpleNamespace
 
 import numpy as np
@@ -155,6 +156,7 @@ def environment(given: Given, tell: Tell) -> Outcome:
         "nice": str(os.nice(0)),
         "group": str(os.getpgid(0) == os.getpid()),
         "memory": str(given.memory_mb),
+        "first to go": Path("/proc/self/oom_score_adj").read_text().strip(),
     }
     return Outcome(energy=ENERGY, reference="RHF", used=used)
 

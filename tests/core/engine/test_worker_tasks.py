@@ -55,6 +55,7 @@ def test_the_environment_is_set_before_the_worker_starts(fake, task, order, hear
     assert used["OMP_WAIT_POLICY"] == "PASSIVE"
     assert int(used["nice"]) >= 10
     assert used["group"] == "True"
+    assert used["first to go"] == "500"
     assert used["memory"] == "500.0"
     assert used["TMPDIR"].startswith(str(tmp_path / "shelf"))
     assert list((tmp_path / "shelf").glob("worker-*")) == []

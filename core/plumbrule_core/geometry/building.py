@@ -13,6 +13,8 @@ DECIMALS = 8
 """Coordinates are rounded to these, in angstrom."""
 LONGEST_BUILD = 30
 """Seconds after which placing the atoms is given up."""
+MOST_BUILT = 200
+"""Atoms; a chain of 180 takes five seconds, beyond 300 placing them begins to fail (measured)."""
 FORCE_FIELD_STEPS = 2000
 PIECE_GAP = 3.0
 """Angstrom between unbonded pieces before the force field moves them; about a van der Waals contact."""
@@ -44,7 +46,7 @@ def build(molecule: Any, title: str = "") -> Draft:
 
     check_elements(molecule)
     full = Chem.AddHs(molecule)
-    check_size(full.GetNumAtoms())
+    _check_buildable(full.GetNumAtoms())
     placed = _side_by_side([_placed(piece) for piece in Chem.GetMolFrags(full, asMols=True)])
     relaxed = _relax(placed)
     notes = ("force field, not optimised" if relaxed else "placed by distances alone, not optimised",)
@@ -92,6 +94,15 @@ def check_elements(molecule: Any) -> None:
                 wrong.append(f"atom {number}: {error}")
     if wrong:
         raise Unreadable("; ".join(wrong))
+
+
+def _check_buildable(atoms: int) -> None:
+    check_size(atoms)
+    if atoms > MOST_BUILT:
+        raise Unreadable(
+            f"{atoms} atoms are too many to build from connections alone (at most {MOST_BUILT}); "
+            "give a file with coordinates instead"
+        )
 
 
 def _problem(molecule: Any, problem: Any) -> str:

@@ -29,8 +29,8 @@ END_OF_RECORD = "$$$$"
 
 
 def recognises(text: str) -> bool:
-    """Whether a counts line or an end mark of the format is there."""
-    return re.search(r"(?m)V[23]000\s*$|^M  END|^\$\$\$\$", text) is not None
+    """Whether a counts line or the end mark of a record is there."""
+    return re.search(r"(?m)^[ \d]{6}.*V[23]000\s*$|^M  END\s*$", text) is not None
 
 
 def read(text: str) -> tuple[Draft, ...]:

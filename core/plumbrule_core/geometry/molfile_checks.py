@@ -37,14 +37,15 @@ def _labels_v2000(lines: Sequence[str], start: int, faults: Faulty) -> list[str]
             f"announces {atoms} atoms and {bonds} bonds, but {len(lines) - first} lines follow",
         )
         return []
-    labels: list[str] = []
-    for at in range(first, first + atoms):
-        line = lines[at]
-        position = [line[column : column + 10].strip() for column in (0, 10, 20)]
-        labels.append(_checked(line[31:34].strip(), position, start + at, faults))
+    rows = lines[first : first + atoms]
+    places = [[row[column : column + 10].strip() for column in (0, 10, 20)] for row in rows]
+    labels = [
+        _checked(row[31:34].strip(), place, start + first + at, faults)
+        for at, (row, place) in enumerate(zip(rows, places, strict=True))
+    ]
     for at in range(first + atoms, first + atoms + bonds):
         ends = [lines[at][column : column + 3].strip() for column in (0, 3)]
-        _check_bond(ends, atoms, start + at, faults)
+        _check_bond(ends, places, start + at, faults)
     return labels
 
 
@@ -67,7 +68,7 @@ def _labels_v3000(lines: Sequence[str], start: int, faults: Faulty) -> list[str]
 
 
 def _v30_rows(lines: Sequence[str]) -> Iterator[tuple[int, str]]:
-    """The rows of a V3000 record with the place of their first line; one ending in '-' goes on in the next."""
+    """The rows of a V3000 record with the place of their first line; '-' at the end goes on in the next."""
     held, place = "", 0
     for at, line in enumerate(lines):
         if not line.startswith(V30):
@@ -103,11 +104,14 @@ def _checked(label: str, position: Sequence[str], line: int, faults: Faulty) -> 
     return label
 
 
-def _check_bond(ends: Sequence[str], atoms: int, line: int, faults: Faulty) -> None:
+def _check_bond(ends: Sequence[str], places: Sequence[Sequence[str]], line: int, faults: Faulty) -> None:
     try:
         first, second = (_count(text) for text in ends)
     except ValueError as error:
         faults.add(line, f"a bond names two atoms by number: {error}")
         return
+    atoms = len(places)
     if not (1 <= first <= atoms and 1 <= second <= atoms and first != second):
         faults.add(line, f"a bond of atoms {first} and {second} cannot be; atoms are numbered 1 to {atoms}")
+    elif places[first - 1] == places[second - 1]:
+        faults.add(line, f"a bond of atoms {first} and {second} cannot be; they stand in one place")

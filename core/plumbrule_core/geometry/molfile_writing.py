@@ -3,10 +3,11 @@
 from collections.abc import Iterator, Sequence
 from typing import Any
 
-from plumbrule_core.documents.bonding import Bond, bonds
+from plumbrule_core.documents.bonding import Bond, bonds, distance
 from plumbrule_core.documents.species import Species
 from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.errors import PlumbruleError
+from plumbrule_core.geometry.shape import CLASH_DISTANCE
 from plumbrule_core.geometry.stated import comment_for, one_line
 from plumbrule_core.geometry.valence import neighbours, spare_valences
 
@@ -26,7 +27,7 @@ def write(species: Species) -> str:
     """One record, coordinates in angstrom to four decimals; raises PlumbruleError where they do not fit."""
     if any(abs(value) > LARGEST for a in species.atoms for value in (a.x, a.y, a.z)):
         raise PlumbruleError(f"{species.name} has coordinates beyond 9999 angstrom; write it as .xyz instead")
-    links = bonds(species.atoms)
+    links = _links(species)
     orders, charges = _orders(species, links) or ([1] * len(links), _spread_charge(species))
     valences = [0] * len(species.atoms)
     for (i, j), order in zip(links, orders, strict=True):
@@ -48,6 +49,12 @@ def write(species: Species) -> str:
         "",
     ]
     return "\n".join(lines)
+
+
+def _links(species: Species) -> tuple[Bond, ...]:
+    """The bonds, but none between atoms that stand in one place, which no reader can take."""
+    atoms = species.atoms
+    return tuple((i, j) for i, j in bonds(atoms) if distance(atoms[i], atoms[j]) > CLASH_DISTANCE)
 
 
 def _valence_mark(total: int) -> int:

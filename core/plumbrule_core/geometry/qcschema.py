@@ -9,6 +9,7 @@ from typing import Any
 from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.errors import Unreadable
 from plumbrule_core.geometry.draft import Draft, Faulty, check_size, in_range, isotope_notes, symbol_of
+from plumbrule_core.geometry.stated import one_line
 from plumbrule_core.units import ANGSTROM_PER_BOHR
 
 SUFFIXES = (".json",)
@@ -44,7 +45,7 @@ def read(text: str) -> tuple[Draft, ...]:
             atoms=atoms,
             charge=charge,
             multiplicity=multiplicity,
-            title=title if isinstance(title, str) else "",
+            title=one_line(title) if isinstance(title, str) else "",
             notes=isotope_notes(molecule["symbols"]),
         ),
     )

@@ -12,7 +12,7 @@ from plumbrule_core.geometry import atom_lines, cml, molfile, qcschema, smiles, 
 from plumbrule_core.geometry.draft import Draft, check_size
 from plumbrule_core.geometry.stated import one_line
 
-FORMATS: tuple[ModuleType, ...] = (qcschema, cml, molfile, xyz, atom_lines, smiles)
+FORMATS: tuple[ModuleType, ...] = (molfile, qcschema, cml, xyz, atom_lines, smiles)
 """The formats that are read, in the order in which text is tried.
 
 Each has NAME, SUFFIXES, recognises and read.
@@ -41,7 +41,7 @@ def read_file(path: str | Path, propose: Propose = ground_multiplicity) -> tuple
     try:
         text = _decoded(_bytes(file))
         found = _format_for(file.suffix.lower(), text)
-        return _finished(found.read(text), file.stem, f"read from {file.name}", propose)
+        return _finished(found.read(text), one_line(file.stem), f"read from {file.name}", propose)
     except Unreadable as error:
         raise Unreadable("\n".join(f"{file.name}: {line}" for line in str(error).split("\n"))) from None
 

@@ -3,13 +3,12 @@
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
-from itertools import combinations
-from statistics import median
 
 import numpy as np
 
 from plumbrule_core.documents.bonding import bonds, distance, normal_length
 from plumbrule_core.documents.species import Atom, Species
+from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.geometry.valence import free_valences, likely_orders, neighbours, usual_length
 from plumbrule_core.units import ANGSTROM_PER_BOHR
 
@@ -20,10 +19,10 @@ The shortest multiple bonds between metals keep 0.6.
 """
 CLASH_DISTANCE = 0.4
 """Angstrom; no bond is as short (H2, the shortest, has 0.74)."""
-BOHR_SHARES = (1.45, 2.4)
+BOHR_SHARES = (1.45, 2.5)
 """The typical nearest distance over the normal one where bohr were taken for angstrom.
 
-Arithmetic: 1.89 times 0.77 (triple bonds) to 1.25 (F2).
+Arithmetic: 1.89 times 0.77 (triple bonds) to 1.3 (F2 by a force field).
 """
 BOHR_SHORTEST_SHARE = 1.35
 """Nothing in such a molecule is nearer than this (arithmetic; multiple metal bonds aside)."""
@@ -65,24 +64,25 @@ class Twist:
 
 def clashes(species: Species) -> tuple[Pair, ...]:
     """Pairs of atoms nearer than any bond of theirs can be."""
-    pairs = (_pair(species.atoms, i, j) for i, j in combinations(range(len(species.atoms)), 2))
-    return tuple(p for p in pairs if p.distance < max(CLASH_DISTANCE, CLASH_SHARE * p.normal))
+    lengths, normals = _distances(species.atoms)
+    near = np.triu(lengths < np.maximum(CLASH_DISTANCE, CLASH_SHARE * normals), k=1)
+    return tuple(
+        Pair(int(i), int(j), float(lengths[i, j]), float(normals[i, j])) for i, j in np.argwhere(near)
+    )
 
 
 def looks_like_bohr(species: Species) -> bool:
     """Whether every distance is as if coordinates in bohr had been taken for angstrom.
 
-    Two atoms alone cannot be told from one stretched bond: there it is a question, not a statement.
+    A molecule with every bond stretched alike looks the same: it is a question, not a statement.
     """
-    atoms = species.atoms
-    if len(atoms) < 2:
+    if len(species.atoms) < 2:
         return False
-    nearest = [
-        min(distance(a, b) / normal_length(a, b) for j, b in enumerate(atoms) if j != i)
-        for i, a in enumerate(atoms)
-    ]
+    lengths, normals = _distances(species.atoms)
+    np.fill_diagonal(lengths, np.inf)
+    nearest = (lengths / normals).min(axis=1)
     low, high = BOHR_SHARES
-    return min(nearest) > BOHR_SHORTEST_SHARE and low < median(nearest) < high
+    return bool(nearest.min() > BOHR_SHORTEST_SHARE and low < np.median(nearest) < high)
 
 
 def in_bohr_as_angstrom(species: Species) -> Species:
@@ -137,8 +137,11 @@ def isolated_atoms(species: Species) -> tuple[int, ...]:
     return tuple(at for at in range(len(species.atoms)) if at not in bonded)
 
 
-def _pair(atoms: Sequence[Atom], i: int, j: int) -> Pair:
-    return Pair(i, j, distance(atoms[i], atoms[j]), normal_length(atoms[i], atoms[j]))
+def _distances(atoms: Sequence[Atom]) -> tuple[np.ndarray, np.ndarray]:
+    """The distance of each two atoms and the sum of their covalent radii, atoms by atoms, in angstrom."""
+    places = np.array([(a.x, a.y, a.z) for a in atoms])
+    radii = np.array([ELEMENTS[a.symbol].covalent_radius for a in atoms])
+    return np.linalg.norm(places[:, None] - places[None, :], axis=2), radii[:, None] + radii[None, :]
 
 
 def _is_double(

@@ -25,6 +25,10 @@ MULTIPLE_BOND_RADII: dict[int, dict[str, float]] = {
 """Angstrom; Pyykkö and Atsumi 2009 (double), Pyykkö, Riedel and Patzschke 2005 (triple); from memory."""
 
 
+SINGLE_BONDS_WITH_THEMSELVES = {"H": 0.741, "O": 1.464, "F": 1.412}
+"""Angstrom; H2, F2 (Huber and Herzberg 1979) and H2O2, longer than the sum of radii; from memory."""
+
+
 def neighbours(count: int, links: Sequence[Bond]) -> tuple[tuple[int, ...], ...]:
     """The bonded neighbours of each atom."""
     found: list[list[int]] = [[] for _ in range(count)]
@@ -46,20 +50,20 @@ def spare_valences(atoms: Sequence[Atom], around: Sequence[Sequence[int]]) -> tu
     """Bonds that each atom lacks even if its neighbours share all they have in multiple bonds.
 
     A terminal atom on one that has all its bonds already (oxygen on sulfur in SO2, on nitrogen in nitrate, or
-    at the ends of ozone) is bound by a lone pair and lacks nothing.
+    at the ends of ozone) is bound by a lone pair and lacks nothing; nor does one on a transition metal.
     """
     free = free_valences(atoms, around)
     return tuple(
-        0
-        if _held_by_a_lone_pair(atoms, around, free, at)
-        else max(0, free[at] - sum(free[n] for n in around[at]))
+        0 if _is_satisfied(atoms, around, free, at) else max(0, free[at] - sum(free[n] for n in around[at]))
         for at in range(len(atoms))
     )
 
 
-def _held_by_a_lone_pair(
+def _is_satisfied(
     atoms: Sequence[Atom], around: Sequence[Sequence[int]], free: Sequence[int], at: int
 ) -> bool:
+    if any(ELEMENTS[atoms[near].symbol].is_transition_metal for near in around[at]):
+        return True
     if len(around[at]) != 1 or ELEMENTS[atoms[at].symbol].is_transition_metal:
         return False
     holder = around[at][0]
@@ -71,6 +75,8 @@ def usual_length(a: Atom, b: Atom, order: int) -> float:
     radii = MULTIPLE_BOND_RADII.get(order, {})
     if a.symbol in radii and b.symbol in radii:
         return radii[a.symbol] + radii[b.symbol]
+    if a.symbol == b.symbol and a.symbol in SINGLE_BONDS_WITH_THEMSELVES:
+        return SINGLE_BONDS_WITH_THEMSELVES[a.symbol]
     return normal_length(a, b)
 
 

@@ -21,7 +21,7 @@ def recognises(text: str) -> bool:
 
 def read(text: str) -> tuple[Draft, ...]:
     """All frames; raises Unreadable with every faulty line."""
-    lines = text.split("\n")
+    lines = text.rstrip().split("\n")
     faults = Faulty()
     drafts: list[Draft] = []
     at = _next_filled(lines, 0)

@@ -65,7 +65,7 @@ def run(words: Sequence[str]) -> int:
     return subprocess.run(words, check=False, cwd=ROOT).returncode
 
 
-def check_python(version: Sequence[int] = sys.version_info) -> None:
+def check_python(version: tuple[int, ...] = sys.version_info) -> None:
     """Raise Problem where this Python is too old."""
     if tuple(version[:2]) < OLDEST_PYTHON:
         needed = "{}.{}".format(*OLDEST_PYTHON)
@@ -107,7 +107,7 @@ class Environment:
             self._stamp(lock).write_text(self._digest(lock), encoding="utf-8")
 
     def _is_ours(self) -> bool:
-        """False where there is none yet, where it belongs to a folder or a Python that is gone, or is half made."""
+        """False where there is none, or one that is half made or of a folder or a Python that is gone."""
         python = self.program("python")
         return Path(python).exists() and self._run([python, "-I", "-c", IS_OURS, str(self.root)]) == 0
 
@@ -126,8 +126,8 @@ class Environment:
         check_venv(self._run)
         if self._run([sys.executable, "-m", "venv", "--clear", str(self.folder)]) != 0:
             raise Problem(
-                f"Python could not make the folder {self.folder}; the lines above say why. Is the disk full, or "
-                "the folder write-protected?"
+                f"Python could not make the folder {self.folder}; the lines above say why. Is the disk full, "
+                "or the folder write-protected?"
             )
 
     def _install(self, *what: str) -> None:
@@ -162,8 +162,8 @@ def check_venv(run: Run = run) -> None:
     importlib.invalidate_caches()
     if not has_venv():
         raise Problem(
-            f"This Python ({sys.executable}) cannot make an environment even so; start with the system's own: "
-            "/usr/bin/python3 packaging/start.py"
+            f"This Python ({sys.executable}) cannot make an environment even so; start with the system's "
+            "own: /usr/bin/python3 packaging/start.py"
         )
 
 

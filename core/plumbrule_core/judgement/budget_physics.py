@@ -137,11 +137,11 @@ def spin_orbit_line(case: Case) -> BudgetLine | None:
 
 def _lowering(species: Species) -> float | None:
     """In cm-1; 0 where there is none in first order, None where it matters and is not known."""
-    table = TABLES["spin_orbit"]
-    if species.charge == 0 and len(species.atoms) == 1 and species.atoms[0].symbol in table["atoms"]:
-        return float(table["atoms"][species.atoms[0].symbol])
-    if species.charge == 0 and species.formula in table["radicals"]:
-        return float(table["radicals"][species.formula])
+    known = {**TABLES["spin_orbit"]["radicals"], **TABLES["spin_orbit"]["ions"]}
+    if len(species.atoms) == 1 and not species.charge:
+        known |= TABLES["spin_orbit"]["atoms"]
+    if species.formula in known:
+        return float(known[species.formula])
     heavy = any(ELEMENTS[atom.symbol].number > 18 for atom in species.atoms)
     ion = len(species.atoms) == 1 and species.charge != 0
     return None if species.multiplicity > 1 and (heavy or ion) else 0.0

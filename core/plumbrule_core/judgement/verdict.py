@@ -59,6 +59,8 @@ def overall(
     if severity == "note":
         return _calm(case, answer)
     headline = reasons[0] if reasons else f"A rung above {best.rung} is not to be used."
+    if {one.code for one in telling} == {"bar-exceeds-target"}:
+        headline = f"{headline} {_capital(_fine(case))}."
     return Verdict(level=LEVELS[severity], headline=_led(severity, headline), reasons=reasons or (headline,))
 
 
@@ -80,15 +82,17 @@ _PLAIN = {"One", "The", "An", "A", "All"}
 
 
 def _calm(case: Case, answer: Answer) -> Verdict:
-    fine = "one determinant describes every molecule"
-    if len(case.species) == 1:
-        fine = f"one determinant describes {case.species[0].name}"
+    fine = _fine(case)
     if case.pending:
         return Verdict(level="unknown", headline=f"So far nothing speaks against it; {_left(case)}.")
     if answer.uncertainty is None:
         return Verdict(level="sound", headline=f"Sound: {fine}.", reasons=(_capital(fine) + ".",))
     bar = f"the bar of ±{in_unit(answer.uncertainty, answer.unit)} holds what is known to be left out"
     return Verdict(level="sound", headline=f"Sound: {fine}, and {bar}.", reasons=(_capital(fine) + ".",))
+
+
+def _fine(case: Case) -> str:
+    return f"one determinant describes {case.species[0].name if len(case.species) == 1 else 'every molecule'}"
 
 
 def _capital(words: str) -> str:

@@ -182,6 +182,22 @@ def test_spin_orbit_of_the_fragments_lowers_a_bond_energy_by_a_known_shift() -> 
     assert lines(found)["spin-orbit coupling"].shift == pytest.approx(-0.40, abs=0.005)
 
 
+@pytest.mark.parametrize(
+    ("symbol", "levels", "lowering"),
+    [
+        ("C", {0: 0.0, 1: 16.417, 2: 43.414}, 29.6),  # NIST Atomic Spectra Database, 3P
+        ("F", {1.5: 0.0, 0.5: 404.141}, 134.7),  # 2P
+        ("Cl", {1.5: 0.0, 0.5: 882.352}, 294.1),
+    ],
+)
+def test_first_order_spin_orbit_is_the_mean_of_the_levels(
+    symbol: str, levels: dict[float, float], lowering: float
+) -> None:
+    mean = sum((2 * j + 1) * level for j, level in levels.items()) / sum(2 * j + 1 for j in levels)
+    assert mean == pytest.approx(lowering, abs=0.06)
+    assert TABLES["spin_orbit"]["atoms"][symbol] == pytest.approx(mean, abs=0.5)
+
+
 def test_the_class_of_a_question_follows_its_species() -> None:
     assert energy_class(case_of(nitrogen(["cc-pVTZ"]))) == "atomisation"
     water = Molecule(xyz="O 0 0 0.1173; H 0 0.7572 -0.4692; H 0 -0.7572 -0.4692")

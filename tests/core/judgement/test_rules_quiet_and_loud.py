@@ -1,10 +1,13 @@
 """One shared test of every rule: quiet where it must be, loud where it must be, and useful when loud."""
 
 import re
+from importlib import import_module
 from itertools import chain
+from pathlib import Path
 
 import pytest
 
+import plumbrule_core.judgement.rules as rules_package
 from plumbrule_core.documents.edits import edited
 from plumbrule_core.documents.findings import SEVERITIES, Finding
 from plumbrule_core.judgement import check
@@ -98,3 +101,12 @@ def test_a_broken_rule_becomes_a_finding_and_hides_no_other() -> None:
 def test_rules_for_before_the_run_speak_without_any_result(rule: Rule, case: Example) -> None:
     seen = case_of(case)
     assert rule.code in {one.code for one in check(seen.brief, seen.plan, MACHINE)}
+
+
+def test_no_file_of_rules_is_forgotten_in_the_one_list() -> None:
+    folder = Path(rules_package.__file__).parent
+    for path in folder.glob("*.py"):
+        module = import_module(f"{rules_package.__name__}.{path.stem}") if path.stem != "__init__" else None
+        own = getattr(module, "RULES", ())
+        assert set(map(id, own)) <= set(map(id, RULES)), path.name
+        assert own or path.stem in ("__init__", "base", "example", "remedies"), path.name

@@ -111,3 +111,29 @@ def test_citations_hold_the_methods_the_limit_and_the_diagnostics_once() -> None
     for word in ("Raghavachari", "Karton and Martin", "Helgaker", "Lee and Taylor"):
         assert sum(word in one for one in cited) == 1, word
     assert not any("practice" in one or "memory" in one for one in cited)
+
+
+def functional_beside(rungs: list[str]) -> Judgement:
+    molecule = Molecule(energies={**LADDER, "B3LYP": -109.5})
+    atom = Molecule(xyz="N 0 0 0", multiplicity=4, energies={**ATOM, "B3LYP": -54.59})
+    one = Example(molecules={"n2": molecule, "n": atom}, question=BOND)
+    case = case_of(replace(one, recipe={"rungs": rungs, "basis": ["cc-pVTZ", "cc-pVQZ"]}))
+    return judge(case.brief, case.plan, case.results)
+
+
+def test_a_functional_is_compared_but_the_answer_stands_on_the_ladder() -> None:
+    found = functional_beside([*LADDER, "B3LYP"])
+    assert found.answer is not None
+    assert found.answer.rung == "CCSD(T)"
+    beside = {one.rung: one for one in found.comparison}["B3LYP"]
+    assert beside.basis == "cc-pVQZ", "functionals are not extrapolated"
+    assert "no-correlated-rung" not in {one.code for one in found.findings}
+
+
+def test_a_functional_alone_asks_for_care_and_offers_the_ladder() -> None:
+    found = functional_beside(["B3LYP"])
+    assert found.answer is not None
+    assert found.answer.rung == "B3LYP"
+    assert found.verdict.level == "take care"
+    alone = {one.code: one for one in found.findings}["no-correlated-rung"]
+    assert "CCSD(T)" in alone.remedies[0].edits[0].value

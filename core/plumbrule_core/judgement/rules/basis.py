@@ -2,7 +2,7 @@
 
 from collections.abc import Iterator
 
-from plumbrule_core.basis_sets import frozen_orbitals
+from plumbrule_core.basis_sets import find, frozen_orbitals
 from plumbrule_core.documents.findings import Evidence, Finding
 from plumbrule_core.documents.questions import EnergyQuestion
 from plumbrule_core.judgement.case import Case, SpeciesView
@@ -75,6 +75,19 @@ def _uncovered(case: Case) -> Iterator[Finding]:
                 evidence=(
                     Evidence(reading="basis", value=basis.name, source="the basis table of this program"),
                 ),
+                remedies=covering(case),
+            )
+
+
+def _unknown(case: Case) -> Iterator[Finding]:
+    for name in case.recipe.basis:
+        if find(name) is None:
+            yield Finding(
+                code="basis-unknown",
+                severity="stop",
+                headline=f"There is no basis set named {name} here.",
+                consequence="Nothing can be run before a known one is chosen.",
+                evidence=(Evidence(reading="basis", value=name, source="the basis table of this program"),),
                 remedies=covering(case),
             )
 
@@ -154,6 +167,16 @@ RULES = (
         judge=_uncovered,
         quiet=(Example(),),
         loud=(Example(molecules={"iodine": Molecule(xyz="I 0 0 0; I 0 0 2.67")}),),
+    ),
+    Rule(
+        code="basis-unknown",
+        severity="stop",
+        stage="before",
+        reads=("basis",),
+        source="the basis table of this program",
+        judge=_unknown,
+        quiet=(Example(), _small(["def2-svp"])),
+        loud=(_small(["cc-pVTZZ"]),),
     ),
     Rule(
         code="basis-minimal",

@@ -5,6 +5,7 @@ from collections.abc import Iterator, Sequence
 from plumbrule_core.documents.bonding import pieces
 from plumbrule_core.documents.findings import Evidence, Finding
 from plumbrule_core.documents.questions import BondQuestion
+from plumbrule_core.documents.species import Species
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.geometry_origin import origin_of
 from plumbrule_core.judgement.rules.base import Rule, each
@@ -33,24 +34,31 @@ def _pieces(case: Case, view: SpeciesView) -> Finding | None:
     )
 
 
-def _origin(case: Case, view: SpeciesView) -> Finding | None:
-    if origin_of(view.species) not in ("force field", "unknown"):
-        return None
-    built = origin_of(view.species) == "force field"
+def _origin(case: Case) -> Iterator[Finding]:
+    for kind, headline in (
+        ("force field", "The {geometry} of {names} built by a force field."),
+        ("unknown", "Nobody said where the {geometry} of {names} from."),
+    ):
+        named = [one for one in case.species if origin_of(one) == kind]
+        if named:
+            yield _said(kind, headline, named)
+
+
+def _said(kind: str, headline: str, named: list[Species]) -> Finding:
+    alone, names = len(named) == 1, listed(one.name for one in named)
+    verb = {"force field": "was" if alone else "were", "unknown": "comes" if alone else "come"}[kind]
+    given = list(dict.fromkeys(one.origin or "not given" for one in named))
     return Finding(
         code="geometry-origin",
         severity="note",
-        species=view.name,
-        headline=(
-            f"The geometry of {view.name} was built by a force field."
-            if built
-            else f"Nobody said where the geometry of {view.name} comes from."
-        ),
-        consequence="What it lies above its minimum is in the number; the budget allows for a typical "
-        "amount.",
-        evidence=(Evidence(reading="origin", value=view.species.origin or "not given", source="arithmetic"),),
+        species=named[0].name if alone else "",
+        headline=headline.format(geometry="geometry" if alone else "geometries", names=f"{names} {verb}"),
+        consequence="The strain that is left in it is in the number; the budget allows for a typical amount.",
+        evidence=(Evidence(reading="origin", value="; ".join(given)[:400], source="arithmetic"),),
         remedies=(
-            advice("Give a geometry that was optimised with a correlated method or a functional, and say so"),
+            advice(
+                "Give geometries that were optimised with a correlated method or a functional, and say so"
+            ),
         ),
     )
 
@@ -105,7 +113,7 @@ RULES = (
         stage="always",
         reads=("origin",),
         source="arithmetic",
-        judge=each(_origin),
+        judge=_origin,
         quiet=(_one(_WATER), _one("N 0 0 0", "")),
         loud=(_one(_WATER, ""), _one(_WATER, "built from SMILES by a force field")),
     ),

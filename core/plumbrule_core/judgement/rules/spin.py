@@ -3,7 +3,7 @@
 from plumbrule_core.documents.findings import Evidence, Finding
 from plumbrule_core.documents.ground_states import ground_multiplicity
 from plumbrule_core.documents.questions import EnergyQuestion, SpinGapQuestion
-from plumbrule_core.documents.species import SPIN_WORDS
+from plumbrule_core.documents.species import SPIN_WORDS, Species, lowest_multiplicity
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.evidence import evidence_of
 from plumbrule_core.judgement.rules.base import Rule, each
@@ -49,13 +49,17 @@ def _spin_evidence(view: SpeciesView, excess: float, bad: bool) -> tuple[Evidenc
 def _other_state(case: Case, view: SpeciesView) -> Finding | None:
     one = view.species
     ground = ground_multiplicity(one.atoms, one.charge)
-    unknown = view.has_metal and len(one.atoms) > 1
-    if isinstance(case.question, SpinGapQuestion) or unknown or ground == one.multiplicity or one.faults():
+    if (
+        isinstance(case.question, SpinGapQuestion)
+        or one.faults()
+        or not _expects(view)
+        or ground == one.multiplicity
+    ):
         return None
     asked, known = (SPIN_WORDS.get(m, f"multiplicity {m}") for m in (one.multiplicity, ground))
     return Finding(
         code="spin-state",
-        severity="note" if isinstance(case.question, EnergyQuestion) or ground == 1 else "care",
+        severity="care" if _known(one) and not isinstance(case.question, EnergyQuestion) else "note",
         species=one.name,
         headline=f"{one.name} ({one.formula}) is asked for as a {asked}; its ground state is expected "
         f"to be a {known}.",
@@ -72,6 +76,18 @@ def _other_state(case: Case, view: SpeciesView) -> Finding | None:
     )
 
 
+def _expects(view: SpeciesView) -> bool:
+    """Whether a ground state can be expected at all: not of molecules with metals, nor of atomic ions."""
+    return view.species.charge == 0 if len(view.species.atoms) == 1 else not view.has_metal
+
+
+def _known(species: Species) -> bool:
+    """Whether the ground state is known, not merely the lowest spin that fits."""
+    lowest = lowest_multiplicity((atom.symbol for atom in species.atoms), species.charge)
+    known = ground_multiplicity(species.atoms, species.charge) != lowest
+    return known or (len(species.atoms) == 1 and species.charge == 0)
+
+
 SPIN_SOURCE = "atoms: NIST Atomic Spectra Database; small molecules: from memory; else the lowest spin"
 
 
@@ -83,6 +99,12 @@ def _radical(excess: float) -> Example:
 
 def _oxygen(multiplicity: int) -> Example:
     return Example(molecules={"o2": Molecule(xyz="O 0 0 0; O 0 0 1.21", multiplicity=multiplicity)})
+
+
+def _atom(symbol: str, multiplicity: int, charge: int) -> Example:
+    return Example(
+        molecules={"atom": Molecule(xyz=f"{symbol} 0 0 0", multiplicity=multiplicity, charge=charge)}
+    )
 
 
 RULES = (
@@ -103,7 +125,7 @@ RULES = (
         reads=("multiplicity",),
         source=SPIN_SOURCE,
         judge=each(_other_state),
-        quiet=(_oxygen(3),),
-        loud=(_oxygen(1),),
+        quiet=(_oxygen(3), _atom("O", 4, 1), _atom("Ni", 3, 0)),
+        loud=(_oxygen(1), _atom("O", 1, 0)),
     ),
 )

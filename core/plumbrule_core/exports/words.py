@@ -44,7 +44,7 @@ READING_WORDS: Mapping[str, str] = {
 
 
 def difference(value: float, unit: str) -> str:
-    """An energy difference with the digits of its unit, for a column that names the unit; a true minus sign."""
+    """An energy difference with the digits of its unit, for a column that names it; a true minus sign."""
     return minus(f"{value:.{PLACES[unit]}f}")
 
 
@@ -84,8 +84,15 @@ def reading(value: ReadingValue | str, unit: str = "") -> str:
         shown = ", ".join(f"{one:.3f}" for one in value[:8])
         text = f"{shown}, … ({len(value)} in all)" if len(value) > 8 else shown
     else:
-        text = minus(f"{value:.4f}" if abs(value) >= 1e-3 or value == 0 else f"{value:.1e}")
+        text = minus(_digits(value))
     return f"{text} {unit}".strip()
+
+
+def _digits(value: float) -> str:
+    """Four digits that count; no power of ten where none is needed."""
+    if abs(value) >= 1000:
+        return f"{value:.1f}"
+    return f"{value:.4g}" if abs(value) >= 1e-3 or value == 0 else f"{value:.1e}"
 
 
 def duration(seconds: float) -> str:

@@ -1,0 +1,202 @@
+"""The report says the answer and its verdict first, all that is needed to repeat it after, and runs nothing."""
+
+import base64
+import re
+import tomllib
+from html import unescape
+from html.parser import HTMLParser
+from xml.etree import ElementTree
+
+import pytest
+
+from plumbrule_core.documents.results import Reading
+from plumbrule_core.documents.species import Atom, Species
+from plumbrule_core.exports import EXPORTS, figures, words
+from plumbrule_core.exports.checks import checks_of
+from plumbrule_core.judgement.thresholds import THRESHOLDS
+
+
+def page_of(record):
+    return EXPORTS[".html"].write(record).decode()
+
+
+def plain(page):
+    return " ".join(unescape(re.sub(r"<[^>]+>", " ", page.partition("</style>")[2])).split())
+
+
+class Balanced(HTMLParser):
+    """Fails on a tag that is closed out of order."""
+
+    VOID = ("meta", "img", "br")
+
+    def __init__(self):
+        super().__init__()
+        self.open = []
+        self.links = []
+
+    def handle_starttag(self, tag, attrs):
+        self.links += [value for key, value in attrs if key in ("src", "href")]
+        if tag not in self.VOID:
+            self.open.append(tag)
+
+    def handle_endtag(self, tag):
+        assert self.open.pop() == tag
+
+
+@pytest.mark.parametrize("kind", ["record", "empty_record", "unasked_record"])
+def test_the_page_is_well_formed_and_needs_nothing_beside_it(kind, request):
+    reader = Balanced()
+    page = page_of(request.getfixturevalue(kind))
+    reader.feed(page)
+    assert reader.open == []
+    assert reader.links
+    assert all(link.startswith("data:image/svg+xml;base64,") for link in reader.links)
+    assert "<script" not in page
+    assert "url(" not in page
+
+
+def test_the_answer_and_the_verdict_stand_before_everything_else(record):
+    text = plain(page_of(record))
+    places = [
+        text.index(words)
+        for words in (
+            "432 ± 12 kJ/mol",
+            "Take care: T1 is large.",
+            "does not replace measurement",
+            "What was found",
+        )
+    ]
+    assert places == sorted(places)
+    assert "not within the 4 kJ/mol asked for" in text
+
+
+def test_everything_that_another_group_needs_is_there(record):
+    text = plain(page_of(record))
+    for needed in (
+        "−1.16340000",
+        "0.741235",
+        "Charge 0; singlet, no unpaired electron",
+        "doublet, 1 unpaired electron",
+        "cc-pVDZ",
+        "Version of pyscf 2.14.0",
+        "2 cores, 24.0 GB",
+        "C. Itation, J. Chem. Phys. 1, 1 (1999)",
+        "Lee and Taylor",
+        "Add the next basis set",
+        "The answer is electronic.",
+        "All 4 calculations ended and converged.",
+        "judgement of a qualified person",
+    ):
+        assert needed in text
+
+
+def test_the_question_inside_the_report_runs_again(record):
+    toml = unescape(page_of(record).partition("<pre>")[2].partition("</pre>")[0])
+    assert tomllib.loads(toml)["question"]["kind"] == "reaction"
+    assert toml == EXPORTS[".toml"].write(record).decode()
+
+
+def test_what_did_not_end_is_said(empty_record):
+    text = plain(page_of(empty_record))
+    assert "No answer yet" in text
+    assert "4 of 4 calculations did not end well" in text
+
+
+def test_why_nothing_can_be_run_is_said(unasked_record):
+    assert "no question is asked yet" in plain(page_of(unasked_record))
+
+
+def test_a_failed_check_is_told_from_a_passed_one(record):
+    found = {
+        check.reading: check
+        for check in checks_of(record.brief.species[1], record.judgement.species[0].readings)
+    }
+    # T1 of a closed shell: 0.02, Lee and Taylor, Int. J. Quantum Chem. Symp. 23, 199 (1989).
+    assert (found["T1"].limit, found["T1"].passed) == (0.02, False)
+    # D1: 0.05, Janssen and Nielsen, Chem. Phys. Lett. 290, 423 (1998).
+    assert (found["D1"].limit, found["D1"].passed) == (0.05, True)
+    assert found["stable"].passed
+
+
+def test_the_limit_of_t1_is_that_of_the_kind_of_species():
+    iron = Species(name="fe", atoms=(Atom(symbol="Fe", x=0, y=0, z=0),), multiplicity=5)
+    radical = Species(name="h", atoms=(Atom(symbol="H", x=0, y=0, z=0),), multiplicity=2)
+    reading = (Reading(name="T1", value=0.03),)
+    limits = [next(checks_of(one, reading)).limit for one in (radical, iron)]
+    # Open shells 0.044 (Rienstra-Kiracofe et al. 2000), 3d metals 0.05 (Jiang, DeYonker, Wilson 2012).
+    assert limits == [0.044, 0.05]
+
+
+def test_every_limit_that_a_check_names_is_in_the_table_of_limits():
+    from plumbrule_core.exports.checks import LOWER, UPPER
+
+    assert set(UPPER.values()) | set(LOWER.values()) <= set(THRESHOLDS)
+
+
+def test_a_gap_below_its_limit_fails():
+    h2 = Species(name="h2", atoms=(Atom(symbol="H", x=0, y=0, z=0), Atom(symbol="H", x=0, y=0, z=0.7)))
+    low, high = (
+        next(checks_of(h2, (Reading(name="homo_lumo_gap", value=v, unit="eV"),))) for v in (1.0, 9.0)
+    )
+    assert not low.passed
+    assert high.passed
+
+
+def drawing(page, place):
+    data = re.findall(r'src="data:image/svg\+xml;base64,([^"]+)"', page)[place]
+    return ElementTree.fromstring(base64.b64decode(data))
+
+
+def test_the_plumb_line_hangs_straight_only_for_sound():
+    def lean(level):
+        return float(re.search(r"rotate\((-?[\d.]+)", figures.plumb_line(level))[1])
+
+    assert lean("sound") == 0
+    assert 5 < abs(lean("take care")) < abs(lean("do not rely on it")) < 90
+
+
+def test_the_comparison_draws_one_point_a_rung_in_the_order_of_their_values(record):
+    root = drawing(page_of(record), 1)
+    svg = "{http://www.w3.org/2000/svg}"
+    places = [float(circle.get("cx")) for circle in root.iter(f"{svg}circle")]
+    assert len(places) == 2
+    assert places[0] < places[1]
+    (band,) = root.iter(f"{svg}rect")
+    assert float(band.get("x")) < places[1] < float(band.get("x")) + float(band.get("width"))
+
+
+def test_the_longest_bar_of_the_budget_is_the_largest_cause(record):
+    root = drawing(page_of(record), 2)
+    widths = [float(box.get("width")) for box in root.iter("{http://www.w3.org/2000/svg}rect")]
+    assert widths[0] / widths[1] == pytest.approx(12.0 / 0.6, rel=0.01)
+
+
+def test_ticks_are_round_and_inside():
+    assert figures.ticks(0.0, 10.0) == (0.0, 2.0, 4.0, 6.0, 8.0, 10.0)
+    assert figures.ticks(-0.7, 0.9) == (-0.5, 0.0, 0.5)
+    assert figures.ticks(3.0, 3.0) == (3.0,)
+
+
+@pytest.mark.parametrize(
+    ("value", "bar", "unit", "text"),
+    [
+        (941.234, 6.34, "kJ/mol", "941.2 ± 6.3 kJ/mol"),
+        (941.234, 63.4, "kJ/mol", "941 ± 63 kJ/mol"),
+        (-40.44, None, "kJ/mol", "−40.4 kJ/mol"),
+        (0.4321, 0.012, "eV", "0.432 ± 0.012 eV"),
+        (-0.001, None, "kJ/mol", "0.0 kJ/mol"),
+    ],
+)
+def test_an_answer_has_the_digits_of_its_bar(value, bar, unit, text):
+    assert words.answer(value, bar, unit) == text
+
+
+def test_times_and_sizes_are_said_as_people_say_them():
+    assert [words.duration(s) for s in (0.42, 75, 720, 12600)] == ["0.4 s", "75 s", "12 min", "3.5 h"]
+    assert [words.memory(mb) for mb in (120, 1228.8)] == ["120 MB", "1.2 GB"]
+    assert [words.reading(v) for v in (True, 0.0314159, 2e-5, -652.7076)] == [
+        "yes",
+        "0.03142",
+        "2.0e-05",
+        "−652.7",
+    ]

@@ -65,9 +65,9 @@ LIGHT = Colours(
     unknown="#7b7e86",
 )
 DARK = Colours(
-    window="#1d1f23",
-    surface="#26292e",
-    raised="#33373d",
+    window="#181a1d",
+    surface="#212327",
+    raised="#2f3238",
     line="#444950",
     text="#e8e6e1",
     muted="#a6a9b0",

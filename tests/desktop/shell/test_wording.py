@@ -1,0 +1,44 @@
+import pytest
+
+from plumbrule_core.documents.findings import Answer
+from plumbrule_core.documents.plan import Forecast
+from plumbrule_desktop.state.wording import answer_words, duration, forecast_details, forecast_words, memory
+
+
+@pytest.mark.parametrize(
+    ("seconds", "words"),
+    [
+        (0.2, "less than 1 s"),
+        (8.4, "8 s"),
+        (360, "6 min"),
+        (9000, "2.5 h"),
+        (3 * 86400, "3 days"),
+    ],
+)
+def test_a_time_is_said_as_people_say_it(seconds: float, words: str) -> None:
+    assert duration(seconds) == words
+
+
+def test_a_size_from_a_thousand_megabytes_on_is_said_in_gigabytes() -> None:
+    assert memory(240) == "240 MB"
+    assert memory(1200) == "1.2 GB"
+
+
+def test_a_forecast_names_time_and_memory_and_its_details_name_the_range() -> None:
+    forecast = Forecast(seconds=360, seconds_low=180, seconds_high=720, memory_mb=1200, disk_mb=500)
+    assert forecast_words(forecast) == "about 6 min, 1.2 GB"
+    details = forecast_details(forecast)
+    assert "between 3 min and 12 min" in details
+    assert "500 MB" in details
+
+
+def test_an_answer_shows_no_more_digits_than_its_uncertainty_leaves() -> None:
+    answer = Answer(value=941.2345, unit="kJ/mol", rung="CCSD(T)", basis="cc-pVTZ", uncertainty=6.31)
+    assert answer_words(answer) == "941.2 \u00b1 6.3 kJ/mol"
+    rough = answer.model_copy(update={"uncertainty": 23.0})
+    assert answer_words(rough) == "941 \u00b1 23 kJ/mol"
+
+
+def test_an_answer_without_uncertainty_claims_none() -> None:
+    answer = Answer(value=-76.241308, unit="hartree", rung="CCSD(T)", basis="cc-pVTZ")
+    assert answer_words(answer) == "-76.24131 hartree"

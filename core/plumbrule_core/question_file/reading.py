@@ -67,27 +67,38 @@ def _faults(refused: Refused) -> tuple[Fault, ...]:
 
 
 def _tables(path: Path) -> Mapping[str, Any]:
+    text = _text(path)
+    try:
+        return tomllib.loads(text)
+    except RecursionError:
+        raise _refused(str(path), "nests lists or tables too deeply") from None
+    except ValueError as error:
+        raise _refused(*_syntax(path, text, str(error))) from None
+
+
+def _text(path: Path) -> str:
     try:
         if path.stat().st_size > LARGEST_FILE:
             raise _refused(str(path), "is too large to be a question file")
-        return tomllib.loads(path.read_text(encoding="utf-8-sig"))
+        return path.read_text(encoding="utf-8-sig")
     except FileNotFoundError:
         raise _refused(str(path), "there is no such file") from None
     except OSError as error:
         raise _refused(str(path), f"cannot be read: {error.strerror or error}") from None
     except UnicodeDecodeError as error:
         raise _refused(f"{path}, byte {error.start}", "is not text in UTF-8; save it as UTF-8") from None
-    except RecursionError:
-        raise _refused(str(path), "nests lists or tables too deeply") from None
-    except ValueError as error:
-        raise _refused(*_syntax(path, str(error))) from None
+    except ValueError:
+        raise _refused(repr(str(path)), "is not a file name that can be opened") from None
 
 
-def _syntax(path: Path, says: str) -> tuple[str, str]:
+def _syntax(path: Path, text: str, says: str) -> tuple[str, str]:
     """`Invalid value (at line 3, column 9)` as the place and the sentence."""
     place = re.search(r" \(at (line \d+, column \d+|end of document)\)$", says)
-    sentence = says[: place.start()] if place else says
-    return (f"{path}, {place.group(1)}" if place else str(path)), f"is not valid TOML here: {sentence}"
+    if place is None:
+        return str(path), f"is not valid TOML: {says}"
+    last = f"line {len(text.splitlines())}, the last"
+    where = last if place[1] == "end of document" else place[1]
+    return f"{path}, {where}", f"is not valid TOML here: {says[: place.start()]}"
 
 
 def _refused(where: str, says: str) -> Refused:

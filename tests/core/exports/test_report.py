@@ -1,4 +1,4 @@
-"""The report says the answer and its verdict first, all that is needed to repeat it after, and runs nothing."""
+"""The report says the answer and its verdict first, and then all that is needed to repeat it."""
 
 import base64
 import re

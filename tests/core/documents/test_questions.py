@@ -50,6 +50,12 @@ def test_a_balanced_reaction_has_no_fault_and_says_itself():
     assert [part.coefficient for part in question.parts(MANY)] == [2, -2, -1]
 
 
+def test_isomers_are_told_apart_by_name():
+    planar, bent = H2.model_copy(update={"name": "planar"}), H2.model_copy(update={"name": "bent"})
+    sentence = ask(kind="reaction", terms={"bent": 1, "planar": -1}).sentence({"planar": planar, "bent": bent})
+    assert "of planar to bent" in "".join(clause.text for clause in sentence)
+
+
 def test_atoms_out_of_balance_are_named_with_their_number():
     assert says(ask(kind="reaction", terms={"water": 1, "dihydrogen": -1})) == [
         "the reaction does not balance: on the side of the products 1 O too many"

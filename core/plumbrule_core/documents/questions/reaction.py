@@ -1,5 +1,6 @@
 """The energy of a reaction: a sum of coefficient times energy, products positive."""
 
+from collections.abc import Mapping
 from typing import Annotated, ClassVar, Literal
 
 from pydantic import Field
@@ -66,18 +67,14 @@ class ReactionQuestion(QuestionBase):
         return tuple(Part(coefficient=c, species=species[name]) for name, c in self.terms.items())
 
     def subject(self, species: Many) -> tuple[Clause, ...]:
-        """`of CO + H2O to CO2 + H2`."""
-        return (
-            Clause(text=" of "),
-            Clause(text=f"{self._side(-1, species)} to {self._side(1, species)}", key="terms"),
-        )
+        """`of CO + H2O to CO2 + H2`; by name where the formulas would not tell the sides apart."""
+        by_formula = {name: _formula(name, species) for name in self.terms}
+        words = by_formula if len(set(by_formula.values())) == len(by_formula) else {n: n for n in self.terms}
+        return (Clause(text=" of "), Clause(text=f"{self._side(-1, words)} to {self._side(1, words)}", key="terms"))
 
-    def _side(self, sign: int, species: Many) -> str:
+    def _side(self, sign: int, words: Mapping[str, str]) -> str:
         found = [(abs(c), name) for name, c in self.terms.items() if c * sign > 0]
-        return (
-            " + ".join(f"{'' if c == 1 else f'{c:g} '}{_formula(name, species)}" for c, name in found)
-            or "nothing"
-        )
+        return " + ".join(f"{'' if c == 1 else f'{c:g} '}{words[name]}" for c, name in found) or "nothing"
 
 
 def _formula(name: str, species: Many) -> str:

@@ -68,7 +68,9 @@ def test_a_pair_extrapolates_hartree_fock_and_correlation_apart() -> None:
     value = {one.rung: one for one in ladder(replace(case, results=shifted))}["CCSD(T)"]
     hf = [2 * ATOM["HF"] - LADDER["HF"] - extra * (2 - 1) for extra in (0.0, 0.02)]
     total = [2 * ATOM["CCSD(T)"] - LADDER["CCSD(T)"] - extra * (2 - 1) for extra in (0.0, 0.12)]
-    limit = hartree_fock_limit(*hf, 3, 4) + correlation_limit(total[0] - hf[0], total[1] - hf[1], 3, 4)
+    limit = hartree_fock_limit(hf[0], hf[1], 3, 4) + correlation_limit(
+        total[0] - hf[0], total[1] - hf[1], 3, 4
+    )
     assert value.extrapolated
     assert value.hartree == pytest.approx(limit, abs=1e-12)
     assert value.basis == "cc-pVTZ to cc-pVQZ, extrapolated"

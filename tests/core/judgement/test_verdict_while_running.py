@@ -1,12 +1,17 @@
 """The verdict while results come in, and when a rung is lost."""
 
+import subprocess
+import sys
 from collections.abc import Callable
 from dataclasses import replace
 
+from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Judgement
-from plumbrule_core.judgement import judge
+from plumbrule_core.documents.plan import Plan
+from plumbrule_core.documents.recipe import Recipe
+from plumbrule_core.judgement import check, judge
 from plumbrule_core.judgement.case import Case
-from plumbrule_core.judgement.rules.example import Example, Molecule, case_of
+from plumbrule_core.judgement.rules.example import MACHINE, Example, Molecule, case_of
 
 LADDER = {"HF": -108.95, "MP2": -109.25, "CCSD": -109.263, "CCSD(T)": -109.275}
 ATOM = {"HF": -54.39, "MP2": -54.46, "CCSD": -54.478, "CCSD(T)": -54.4785}
@@ -137,3 +142,19 @@ def test_a_functional_alone_asks_for_care_and_offers_the_ladder() -> None:
     assert found.verdict.level == "take care"
     alone = {one.code: one for one in found.findings}["no-correlated-rung"]
     assert "CCSD(T)" in alone.remedies[0].edits[0].value
+
+
+def test_an_empty_or_faulty_brief_is_checked_and_judged_without_a_broken_rule() -> None:
+    twice = [Molecule(xyz="O 0 0 0; H 0 0 0.96", charge=-1).species("a"), Molecule().species("a")]
+    faulty = Brief(species=tuple(twice), recipe=Recipe(basis=("no such set",), rungs=("no such rung",)))
+    for brief in (Brief(), faulty, Brief(species=(twice[0],))):
+        found = check(brief, Plan(), MACHINE)
+        assert "rule-broken" not in {one.code for one in found}
+        assert judge(brief, Plan(), {}).verdict.level == "unknown"
+
+
+def test_importing_judgement_loads_no_chemistry_library_and_no_window() -> None:
+    code = "import sys, plumbrule_core.judgement; print(sorted({m.split('.')[0] for m in sys.modules}))"
+    loaded = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True).stdout
+    for name in ("pyscf", "rdkit", "scipy", "h5py", "PySide6"):
+        assert f"'{name}'" not in loaded

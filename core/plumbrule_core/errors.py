@@ -25,5 +25,5 @@ class UnlikeRecipes(PlumbruleError):
     """Two energies of different recipes were about to be subtracted."""
 
 
-class Stopped(Exception):  # noqa: N818 - it is a request that was honoured, not an error
+class Stopped(Exception):
     """Raised inside a worker when the user asked it to stop."""

@@ -65,8 +65,8 @@ def test_a_question_is_answered_kept_and_answered_again_without_computing(tmp_pa
 
 
 def test_the_energy_is_that_of_the_literature():
-    # H2 at 1.4 bohr in STO-3G: HF -1.1167 hartree, full CI -1.1373 (Szabo and Ostlund, Modern Quantum Chemistry,
-    # sections 3.5.2 and 4.3); for two electrons CCSD is full CI.
+    # H2 at 1.4 bohr in STO-3G: HF -1.1167 hartree, full CI -1.1373 (Szabo and Ostlund,
+    # Modern Quantum Chemistry, sections 3.5.2 and 4.3); for two electrons CCSD is full CI.
     session = Session.open(None)
     number = session.add_brief(ask(dihydrogen(1.4 * 0.529177210544)))
     run_to_end(session, number)

@@ -52,7 +52,9 @@ def test_a_balanced_reaction_has_no_fault_and_says_itself():
 
 def test_isomers_are_told_apart_by_name():
     planar, bent = H2.model_copy(update={"name": "planar"}), H2.model_copy(update={"name": "bent"})
-    sentence = ask(kind="reaction", terms={"bent": 1, "planar": -1}).sentence({"planar": planar, "bent": bent})
+    sentence = ask(kind="reaction", terms={"bent": 1, "planar": -1}).sentence(
+        {"planar": planar, "bent": bent}
+    )
     assert "of planar to bent" in "".join(clause.text for clause in sentence)
 
 

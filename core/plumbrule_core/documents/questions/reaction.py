@@ -70,7 +70,10 @@ class ReactionQuestion(QuestionBase):
         """`of CO + H2O to CO2 + H2`; by name where the formulas would not tell the sides apart."""
         by_formula = {name: _formula(name, species) for name in self.terms}
         words = by_formula if len(set(by_formula.values())) == len(by_formula) else {n: n for n in self.terms}
-        return (Clause(text=" of "), Clause(text=f"{self._side(-1, words)} to {self._side(1, words)}", key="terms"))
+        return (
+            Clause(text=" of "),
+            Clause(text=f"{self._side(-1, words)} to {self._side(1, words)}", key="terms"),
+        )
 
     def _side(self, sign: int, words: Mapping[str, str]) -> str:
         found = [(abs(c), name) for name, c in self.terms.items() if c * sign > 0]

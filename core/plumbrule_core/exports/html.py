@@ -1,13 +1,13 @@
 """The report: one HTML page that needs nothing beside it, with its drawings and its question file inside."""
 
 import base64
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from typing import Any
 
 from plumbrule_core import __version__
 from plumbrule_core.documents.species import Species, spin_words
 from plumbrule_core.exports import figures, words
-from plumbrule_core.exports.checks import checks_of, unfinished
+from plumbrule_core.exports.checks import Check, checks_of, unfinished
 from plumbrule_core.exports.facts import energies_of, results_of, sentence_of, species_of, task_rows
 from plumbrule_core.exports.record import Record
 from plumbrule_core.judgement.wording import bar
@@ -46,6 +46,7 @@ class ReportHtml:
 def _context(record: Record) -> Context:
     judgement, brief = record.judgement, record.brief
     rows = task_rows(record)
+    species = [_species(record, one) for one in species_of(record)]
     return {
         "css": text("report.css"),
         "version": __version__,
@@ -60,7 +61,8 @@ def _context(record: Record) -> Context:
         "meets": judgement.answer.meets_target if judgement.answer is not None else None,
         "unit": brief.question.unit if brief.question is not None else "kJ/mol",
         "pictures": _pictures(record),
-        "species": [_species(record, one) for one in species_of(record)],
+        "species": species,
+        "limits": _sources(check for part in species for check in part["checks"]),
         "rows": rows,
         "unfinished": unfinished(rows),
         "faults": record.plan.faults,
@@ -110,6 +112,17 @@ def _species(record: Record, species: Species) -> Context:
         "notes": tuple(dict.fromkeys(note for result in computed for note in result.notes)),
         "used": computed[0].used if computed else {},
     }
+
+
+def _sources(checks: Iterable[Check]) -> dict[str, list[str]]:
+    """Each source with the readings whose limits it gives, nothing twice."""
+    found: dict[str, list[str]] = {}
+    for check in checks:
+        names = found.setdefault(check.source, []) if check.source else []
+        word = words.READING_WORDS.get(check.reading, check.reading)
+        if word not in names:
+            names.append(word)
+    return found
 
 
 def _settings(record: Record) -> tuple[tuple[str, str], ...]:

@@ -89,10 +89,12 @@ def reading(value: ReadingValue | str, unit: str = "") -> str:
 
 
 def _digits(value: float) -> str:
-    """Four digits that count; no power of ten where none is needed."""
+    """Four digits that count; no power of ten where none is needed; the residue of rounding is 0."""
+    if abs(value) < 1e-12:
+        return "0"
     if abs(value) >= 1000:
         return f"{value:.1f}"
-    return f"{value:.4g}" if abs(value) >= 1e-3 or value == 0 else f"{value:.1e}"
+    return f"{value:.4g}" if abs(value) >= 1e-3 else f"{value:.1e}"
 
 
 def duration(seconds: float) -> str:

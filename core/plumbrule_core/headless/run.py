@@ -24,7 +24,7 @@ def command(arguments: argparse.Namespace) -> int:
     check_output(arguments.json, "--json")
     check_output(arguments.casebook, "--casebook")
     brief, plan, here = planned(arguments.question)
-    memory_mb = arguments.memory * 1024 if arguments.memory else here.memory_mb
+    memory_mb = _memory_mb(arguments.memory, here)
     new = arguments.casebook is None or not arguments.casebook.exists()
     if new and _too_large(plan.tasks, memory_mb, here, arguments.yes):
         return TOO_LARGE
@@ -48,6 +48,13 @@ def _threads(asked: int | None, here: Machine) -> int:
     if asked is not None and asked > here.cores:
         say(f"--threads: {asked} is more than the {here.cores} cores of this machine; {here.cores} are used")
     return min(asked or here.cores, here.cores)
+
+
+def _memory_mb(asked_gb: float | None, here: Machine) -> float:
+    if asked_gb is not None and asked_gb * 1024 > here.memory_mb:
+        there = words.memory(here.memory_mb)
+        say(f"--memory: {asked_gb:g} GB is more than the {there} of this machine; {there} are used")
+    return min(asked_gb * 1024 if asked_gb is not None else here.memory_mb, here.memory_mb)
 
 
 def _number_of(session: Session, brief: Brief) -> int:

@@ -81,7 +81,7 @@ def test_everything_that_another_group_needs_is_there(record):
         "Version of pyscf 2.14.0",
         "2 cores, 24.0 GB",
         "C. Itation, J. Chem. Phys. 1, 1 (1999)",
-        "Lee and Taylor",
+        "T1: Lee and Taylor, Int. J. Quantum Chem. Symp. 23, 199 (1989)",
         "Add the next basis set",
         "The answer is electronic.",
         "All 4 calculations ended and converged.",

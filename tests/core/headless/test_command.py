@@ -210,6 +210,14 @@ def test_a_forecast_beyond_the_memory_ends_with_5_unless_told_yes(tmp_path, h2, 
     assert book.exists()
 
 
+def test_more_threads_and_memory_than_the_machine_has_are_cut_with_a_word(tmp_path, h2, book, capsys):
+    words = ["run", str(h2), "--casebook", str(book), "--threads", "999", "--memory", "99999"]
+    assert main(words) == 0
+    said = capsys.readouterr().err
+    assert "--threads: 999 is more than" in said
+    assert "--memory: 99999 GB is more than" in said
+
+
 def test_an_interrupt_ends_with_4_and_the_next_run_carries_on(tmp_path, water):
     book, out = tmp_path / "case.plumb", tmp_path / "out.json"
     words = [*COMMAND, "run", str(water), "--casebook", str(book), "--threads", "1"]

@@ -140,11 +140,19 @@ class PlumbLine(QWidget):
         )
         self.answer.setText(_answer(judgement))
         self.answer.setVisible(bool(self.answer.text()))
-        self.headline.setText(verdict.headline if verdict.level != "unknown" else "")
+        self.headline.setText(_headline(verdict))
         self.setToolTip("\n".join(verdict.reasons))
         self.setAccessibleDescription(
             ". ".join(filter(None, (self.words.text(), self.answer.text(), self.headline.text())))
         )
+
+
+def _headline(verdict: Verdict) -> str:
+    """The headline without the words that stand above it already."""
+    if verdict.level == "unknown":
+        return ""
+    says = verdict.headline.removeprefix(f"{WORDS[verdict.level]}: ")
+    return says[:1].upper() + says[1:]
 
 
 def _answer(judgement: Judgement | None) -> str:

@@ -17,6 +17,7 @@ from PySide6.QtWidgets import (
 
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Edit
+from plumbrule_core.documents.plan import Plan
 from plumbrule_core.documents.questions import Clause
 from plumbrule_desktop.question_popups import popup_for
 from plumbrule_desktop.state.desk import Desk
@@ -208,9 +209,12 @@ class QuestionLine(QFrame):
         self.trouble.setText(shown[0][:1].upper() + shown[0][1:] + "." if shown else "")
         self.trouble.setToolTip("\n".join(shown))
         self.trouble.setVisible(bool(shown))
-        total = plan.forecast if plan and not faults else None
-        pending = plan is None and not faults
-        self.forecast.setText(forecast_words(total) if total else "counting\u2026" if pending else "")
+        left = self._left() if plan and not faults else Plan()
+        total = left.forecast
+        pending = plan is None and not faults and desk.brief_id is not None
+        done = plan is not None and not faults and bool(plan.tasks)
+        rest = "all answered" if done else "counting\u2026" if pending else ""
+        self.forecast.setText(forecast_words(total) if total else rest)
         self.forecast.setToolTip(forecast_details(total) if total else "")
         self._dress_button()
 
@@ -219,7 +223,13 @@ class QuestionLine(QFrame):
         """Whether Run would start something."""
         desk = self._desk
         ready = desk.plan is not None and not desk.faults and not desk.casebook.read_only
-        return ready and not desk.running
+        return ready and not desk.running and bool(self._left().tasks)
+
+    def _left(self) -> Plan:
+        """The tasks of the plan that are not answered yet."""
+        plan, known = self._desk.plan or Plan(), self._desk.state.tasks
+        answered = {key for key, task in known.items() if task.state in ("done", "reused")}
+        return Plan(tasks=tuple(task for task in plan.tasks if task.id not in answered))
 
     def _dress_button(self) -> None:
         desk = self._desk
@@ -230,7 +240,8 @@ class QuestionLine(QFrame):
             return
         self.button.setText("Run")
         self.button.setEnabled(self.can_run)
-        self.button.setToolTip("\n".join(str(fault.says) for fault in desk.faults) or "Run the plan")
+        says = "Compute what is not answered yet" if self.can_run else "There is nothing left to compute"
+        self.button.setToolTip("\n".join(fault.says for fault in desk.faults) or says)
 
 
 def _clauses(brief: Brief) -> tuple[Clause, ...]:

@@ -1,6 +1,6 @@
 """The window: the shell at once, the pages after the first paint, and an orderly end."""
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from functools import partial
 from pathlib import Path
 
@@ -45,7 +45,7 @@ class Window(QMainWindow):
         self._painted = False
         self._ended = False
         self.resize(1280, 800)
-        self.setMinimumSize(900, 600)
+        self.setMinimumSize(940, 600)
         self.setAcceptDrops(False)
         self.banner = Banner()
         self.question_line = QuestionLine(self.desk)
@@ -144,7 +144,9 @@ class Window(QMainWindow):
             self._painted = True
             watched.removeEventFilter(self)
             make: list[Callable[[], object]] = [partial(self.stack.page, name) for name in PAGES]
-            self._stages = iter((make[0], self._start, *make[1:]))
+            begin = partial(self._begin, self.desk)
+            stages = (make[0], begin, *make[1:], self.three_d.ask)
+            self._stages: Iterator[Callable[[], object]] = iter(stages)
             QTimer.singleShot(0, self, self._next_stage)
         return super().eventFilter(watched, event)
 
@@ -163,10 +165,6 @@ class Window(QMainWindow):
     def furnished(self) -> bool:
         """Whether every page is there."""
         return len(self.pages) == len(PAGES)
-
-    def _start(self) -> None:
-        self._begin(self.desk)
-        self.three_d.ask()
 
     # what people do
 

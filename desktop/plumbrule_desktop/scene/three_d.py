@@ -2,12 +2,14 @@
 
 import os
 import sys
+from importlib import import_module
 from importlib.metadata import PackageNotFoundError, version
 from pathlib import Path
 
 from PySide6.QtCore import QObject, QProcess, QProcessEnvironment, QTimer, Signal
 
 from plumbrule_desktop.settings import Settings
+from plumbrule_desktop.state.clerk import Clerk
 
 YES = "yes"
 PROBE_MS = 30_000
@@ -29,8 +31,10 @@ class ThreeD(QObject):
     def __init__(self, settings: Settings, parent: QObject | None = None) -> None:
         super().__init__(parent)
         self._settings = settings
+        self._clerk = Clerk("plumbrule-3d", self)
         self._process: QProcess | None = None
         self._answer: str | None = None
+        self._asked = False
         self._limit = QTimer(self, singleShot=True, interval=PROBE_MS)
         self._limit.timeout.connect(lambda: self._ended("drawing one frame took too long"))
 
@@ -41,16 +45,16 @@ class ThreeD(QObject):
 
     def ask(self) -> None:
         """Answer from memory, or start the child process."""
-        if self._answer is not None or self._process is not None:
+        if self._asked:
             return
+        self._asked = True
         force_software_path()
         kept = self._settings.three_d(_circumstances())
         if kept == YES:
-            self._ended(kept)
+            self._load()
             return
         self._process = QProcess(self)
         environment = QProcessEnvironment.systemEnvironment()
-        environment.insert("VTK_DEFAULT_OPENGL_WINDOW", os.environ.get("VTK_DEFAULT_OPENGL_WINDOW", ""))
         environment.insert(PROBE_VARIABLE, "1")
         self._process.setProcessEnvironment(environment)
         self._process.finished.connect(self._finished)
@@ -60,7 +64,11 @@ class ThreeD(QObject):
         self._limit.start()
 
     def close(self) -> None:
-        """End a probe that still runs."""
+        """End what still runs; nothing is announced afterwards."""
+        self._end_process()
+        self._clerk.close()
+
+    def _end_process(self) -> None:
         self._limit.stop()
         process, self._process = self._process, None
         if process is not None and process.state() != QProcess.ProcessState.NotRunning:
@@ -80,12 +88,30 @@ class ThreeD(QObject):
             self._ended(YES if code == 0 else "OpenGL draws nothing here")
 
     def _ended(self, answer: str) -> None:
-        if self._answer is not None:
+        if self._process is None:
             return
-        self._answer = answer
-        self.close()
+        self._end_process()
         if answer == YES:
             self._settings.remember_three_d(_circumstances(), answer)
+            self._load()
+        else:
+            self._announce(answer)
+
+    def _load(self) -> None:
+        """Import the library in a thread, module by module, so that the window goes on meanwhile."""
+        self._clerk.do(
+            lambda: import_module("plumbrule_desktop.scene.picture"),
+            lambda _: self._announce(YES),
+            self._not_loaded,
+        )
+
+    def _not_loaded(self, error: Exception) -> None:
+        if not isinstance(error, ImportError):
+            raise error
+        self._announce(f"the library for it cannot be loaded ({error})")
+
+    def _announce(self, answer: str) -> None:
+        self._answer = answer
         self.known.emit(answer)
 
 

@@ -227,6 +227,8 @@ def test_a_run_goes_from_the_button_to_a_verdict_on_the_plumb_line(
     qtbot.waitUntil(lambda: not window.desk.running, timeout=LONG)
     qtbot.waitUntil(lambda: bool(window.plumb_line.answer.text()), timeout=LONG)
     assert button.text() == "Run"
+    assert window.question_line.forecast.text() == "all answered"
+    assert not button.isEnabled()
     assert window.plumb_line.words.text() != "Nothing known yet"
     assert window.plumb_line.accessibleDescription().startswith(window.plumb_line.words.text())
 

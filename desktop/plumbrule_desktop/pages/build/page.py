@@ -27,10 +27,10 @@ class BuildPage(QWidget):
         self.splitter = QSplitter(Qt.Orientation.Horizontal)
         self.splitter.setHandleWidth(12)
         self.splitter.setChildrenCollapsible(False)
-        for part, width, stretch in ((self.species, 272, 0), (self.molecule, 480, 1), (self.recipe, 316, 0)):
+        for part, least, stretch in ((self.species, 236, 0), (self.molecule, 220, 1), (self.recipe, 252, 0)):
             self.splitter.addWidget(part)
             self.splitter.setStretchFactor(self.splitter.count() - 1, stretch)
-            part.setMinimumWidth(min(width, 250))
+            part.setMinimumWidth(least)
         self.splitter.setSizes([272, 480, 316])
         row = QHBoxLayout(self)
         row.setContentsMargins(14, 6, 2, 12)

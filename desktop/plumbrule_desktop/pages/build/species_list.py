@@ -74,7 +74,7 @@ class SpeciesList(QWidget):
 
     def choose(self, name: str) -> None:
         """Show another species."""
-        if name != self._current:
+        if name != self._current and (not name or name in self._desk.brief.by_name):
             self._current = name
             self._mark()
             self.chosen.emit(name)

@@ -59,8 +59,6 @@ def overall(
     if severity == "note":
         return _calm(case, answer)
     headline = reasons[0] if reasons else f"A rung above {best.rung} is not to be used."
-    if {one.code for one in telling} == {"bar-exceeds-target"}:
-        headline = f"{headline} {_capital(_fine(case))}."
     return Verdict(level=LEVELS[severity], headline=_led(severity, headline), reasons=reasons or (headline,))
 
 
@@ -87,8 +85,14 @@ def _calm(case: Case, answer: Answer) -> Verdict:
         return Verdict(level="unknown", headline=f"So far nothing speaks against it; {_left(case)}.")
     if answer.uncertainty is None:
         return Verdict(level="sound", headline=f"Sound: {fine}.", reasons=(_capital(fine) + ".",))
-    bar = f"the bar of ±{in_unit(answer.uncertainty, answer.unit)} holds what is known to be left out"
-    return Verdict(level="sound", headline=f"Sound: {fine}, and {bar}.", reasons=(_capital(fine) + ".",))
+    size = f"±{in_unit(answer.uncertainty, answer.unit)}"
+    if answer.meets_target:
+        held = f"{fine}, and the bar of {size} holds what is known to be left out"
+    else:
+        held = (
+            f"{fine}. But the bar of {size} is wider than you need: more work is due before the number serves"
+        )
+    return Verdict(level="sound", headline=f"Sound: {held}.", reasons=(_capital(fine) + ".",))
 
 
 def _fine(case: Case) -> str:

@@ -101,6 +101,14 @@ def test_ground_states_of_atoms_are_those_of_the_tables(symbol, multiplicity):
     assert ground_multiplicity((Atom(symbol=symbol, x=0, y=0, z=0),), 0) == multiplicity
 
 
+@pytest.mark.parametrize(
+    ("symbol", "charge", "multiplicity"), [("O", 1, 4), ("F", -1, 1), ("Na", 1, 1), ("C", -1, 4)]
+)
+def test_ions_of_atoms_get_the_ground_state_of_their_electron_count(symbol, charge, multiplicity):
+    # Ground terms O+ 4S, F- 1S, Na+ 1S, C- 4S: NIST Atomic Spectra Database and affinity tables (from memory)
+    assert ground_multiplicity((Atom(symbol=symbol, x=0, y=0, z=0),), charge) == multiplicity
+
+
 def test_the_multiplicity_is_said_in_words():
     assert spin_words(3) == "triplet, 2 unpaired electrons"
     assert spin_words(1) == "singlet, no unpaired electron"

@@ -236,12 +236,13 @@ def test_zero_point_energy_is_said_to_be_missing(recorded: Callable[..., Judgeme
     assert "never negligible" in said.consequence
 
 
-def test_a_bar_wider_than_the_need_asks_for_care_and_offers_the_next_basis() -> None:
+def test_a_bar_wider_than_the_need_is_said_in_the_headline_and_the_next_basis_is_offered() -> None:
     found = judged(nitrogen(["aug-cc-pVTZ"], within=1.0))
     assert found.answer is not None
     assert found.answer.meets_target is False
     wide = {one.code: one for one in found.findings}["bar-exceeds-target"]
-    assert found.verdict.level == "take care"
+    assert found.verdict.level == "sound"
+    assert "is wider than you need" in found.verdict.headline
     assert wide.remedies[0].edits[0].value == ["aug-cc-pVTZ", "aug-cc-pVQZ"]
     assert wide.remedies[-1].edits[0].path == "question.within"
     assert wide.remedies[-1].edits[0].value >= found.answer.uncertainty

@@ -6,12 +6,13 @@ from collections.abc import Callable
 from dataclasses import replace
 
 from plumbrule_core.documents.brief import Brief
-from plumbrule_core.documents.findings import Judgement
+from plumbrule_core.documents.findings import Finding, Judgement, Severity
 from plumbrule_core.documents.plan import Plan
 from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.judgement import check, judge
 from plumbrule_core.judgement.case import Case
 from plumbrule_core.judgement.rules.example import MACHINE, Example, Molecule, case_of
+from plumbrule_core.judgement.verdict import ordered
 
 LADDER = {"HF": -108.95, "MP2": -109.25, "CCSD": -109.263, "CCSD(T)": -109.275}
 ATOM = {"HF": -54.39, "MP2": -54.46, "CCSD": -54.478, "CCSD(T)": -54.4785}
@@ -92,18 +93,16 @@ def test_a_diradical_is_known_before_coupled_cluster_has_run(
 
 
 def test_findings_about_the_answers_rung_come_before_others_of_the_same_severity() -> None:
-    case = nitrogen()
-    far = {
-        key: result.model_copy(update={"energy": result.energy - 0.05})
-        if (result.species, result.rung) == ("n2", "MP2")
-        else result
-        for key, result in case.results.items()
-    }
-    tight = case.brief.model_copy(update={"question": case.brief.question.model_copy(update={"within": 1.0})})  # type: ignore[union-attr]
-    found = judge(tight, case.plan, far)
-    codes = [one.code for one in found.findings if one.severity == "care"]
-    assert codes.index("bar-exceeds-target") < codes.index("mp2-far")
-    assert "bar" in found.verdict.headline
+    def said(code: str, severity: Severity, *rungs: str) -> Finding:
+        return Finding(code=code, severity=severity, headline=code, consequence="", rungs=rungs)
+
+    found = (
+        said("mp2", "care", "MP2"),
+        said("note", "note"),
+        said("top", "care", "CCSD(T)"),
+        said("stop", "stop", "HF"),
+    )
+    assert [one.code for one in ordered(found, "CCSD(T)")] == ["stop", "top", "mp2", "note"]
 
 
 def test_citations_hold_the_methods_the_limit_and_the_diagnostics_once() -> None:

@@ -26,7 +26,7 @@ def _too_wide(case: Case) -> Iterator[Finding]:
         return
     yield Finding(
         code="bar-exceeds-target",
-        severity="care",
+        severity="note",
         headline=f"The bar of ±{in_unit(standing.uncertainty, case.unit)} is wider than the "
         f"{question.within:g} "
         f"{case.unit} that are needed.",
@@ -102,7 +102,7 @@ def _barred(uncertainty: float | None, question: Mapping[str, Any] = _BOND) -> E
 RULES = (
     Rule(
         code="bar-exceeds-target",
-        severity="care",
+        severity="note",
         stage="answer",
         reads=("uncertainty",),
         source="arithmetic",

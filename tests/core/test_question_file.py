@@ -68,7 +68,10 @@ def test_a_multiplicity_that_nobody_states_is_the_proposed_ground_state(tmp_path
 
 def test_the_proposal_fits_the_charge_of_the_table(tmp_path):
     text = GOOD.replace("[recipe]", "[species.cation]\nxyz = 'O 0 0 0'\ncharge = 1\n\n[recipe]")
-    assert read_question(write(tmp_path, text)).by_name["cation"].multiplicity == 2
+    # O is 2p4 3P, O+ is 2p3 4S (NIST Atomic Spectra Database, from memory).
+    assert read_question(write(tmp_path, text)).by_name["cation"].multiplicity == 4
+    neutral = text.replace("charge = 1\n", "")
+    assert read_question(write(tmp_path, neutral)).by_name["cation"].multiplicity == 3
 
 
 def test_a_geometry_is_looked_for_beside_the_file_and_keeps_what_it_states(tmp_path):

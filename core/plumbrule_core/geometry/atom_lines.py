@@ -26,10 +26,10 @@ def read(text: str) -> tuple[Draft, ...]:
         if not line.strip() or line.lstrip().startswith("#"):
             continue
         try:
-            if "=" in line:
-                said |= stated(line)
-                continue
             fields = _fields(line)
+            if not _like_an_atom(fields) and (found := stated(line)):
+                said |= found
+                continue
             atoms.append(atom_of(fields))
             labels.append(fields[0])
         except ValueError as error:

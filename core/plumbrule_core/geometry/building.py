@@ -1,11 +1,13 @@
 """Three-dimensional structures from connections alone, through RDKit and a force field."""
 
+from collections.abc import Iterator
+from contextlib import contextmanager
 from typing import Any
 
 from plumbrule_core.documents.species import Atom
 from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.errors import Unreadable
-from plumbrule_core.geometry.draft import Draft, check_size, symbol_of
+from plumbrule_core.geometry.draft import Draft, check_size, in_range, symbol_of
 
 SEED = 20250
 """The same connections give the same structure, every time."""
@@ -23,6 +25,20 @@ PROBLEMS = {
     "AtomKekulizeException": "is marked aromatic outside a ring",
     "KekulizeException": "stands in an aromatic ring to which no alternating bonds can be given",
 }
+
+
+@contextmanager
+def library_refusals(where: str) -> Iterator[None]:
+    """Keeps RDKit quiet, and turns whatever it or we refuse into Unreadable with `where` in front."""
+    from rdkit import Chem, rdBase
+
+    with rdBase.BlockLogs():
+        try:
+            yield
+        except Unreadable as error:
+            raise Unreadable(f"{where}: {error}") from None
+        except (RuntimeError, Chem.MolSanitizeException):
+            raise Unreadable(f"{where}: its bonds and marks contradict one another") from None
 
 
 def sanitised(molecule: Any) -> Any:
@@ -60,15 +76,16 @@ def build(molecule: Any, title: str = "") -> Draft:
 
 
 def atoms_of(molecule: Any) -> tuple[Atom, ...]:
-    """The atoms of an RDKit molecule with coordinates, in angstrom."""
+    """The atoms of an RDKit molecule with coordinates, in angstrom; raises Unreadable if one is too far out."""
     positions = molecule.GetConformer().GetPositions()
-    return tuple(
-        Atom(
-            symbol=atom.GetSymbol(),
-            **{axis: round(float(value), DECIMALS) for axis, value in zip("xyz", place, strict=True)},
+    try:
+        return tuple(
+            Atom(symbol=atom.GetSymbol(), x=x, y=y, z=z)
+            for atom, place in zip(molecule.GetAtoms(), positions, strict=True)
+            for x, y, z in [[in_range(round(float(value), DECIMALS)) for value in place]]
         )
-        for atom, place in zip(molecule.GetAtoms(), positions, strict=True)
-    )
+    except ValueError as error:
+        raise Unreadable(str(error)) from None
 
 
 def multiplicity_of(molecule: Any) -> int | None:

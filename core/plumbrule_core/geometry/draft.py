@@ -12,6 +12,8 @@ MOST_FAULTS = 10
 """A refusal names this many faults and counts the rest."""
 MOST_ATOMS = 500
 LARGEST_COORDINATE = 1e4
+SERIAL = "0123456789_"
+"""What may follow a symbol in a label such as `C12`."""
 HEAVY_HYDROGEN = ("D", "T")
 GHOSTS = ("X", "XX", "BQ", "GH", "GHOST", "Q", "DU", "DUMMY", "LP", "*")
 BEYOND = ("Fr", "Ra", "Ac", "Th", "Pa", "U", "Np", "Pu", "Am", "Cm", "Bk", "Cf", "Es", "Fm", "Md", "No", "Lr")
@@ -56,7 +58,7 @@ def symbol_of(label: str) -> str:
     """
     if label.isascii() and label.isdigit():
         return _by_number(label)
-    bare = re.sub(r"[\d_]+$", "", label)
+    bare = label.rstrip(SERIAL)
     symbol = bare.capitalize()
     if symbol in ELEMENTS:
         return symbol
@@ -88,7 +90,7 @@ def _why_not(label: str, bare: str) -> str:
 
 def isotope_notes(labels: list[str]) -> tuple[str, ...]:
     """`D read as H` for each heavy hydrogen among the labels."""
-    bare = {re.sub(r"[\d_]+$", "", label).upper() for label in labels}
+    bare = {label.rstrip(SERIAL).upper() for label in labels}
     return tuple(f"{name} read as H" for name in HEAVY_HYDROGEN if name in bare)
 
 

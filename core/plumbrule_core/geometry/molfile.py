@@ -15,6 +15,7 @@ from plumbrule_core.geometry.building import (
     build,
     check_elements,
     isotopes_left_out,
+    library_refusals,
     multiplicity_of,
     sanitised,
 )
@@ -76,22 +77,14 @@ def _stated(lines: Sequence[str], start: int, faults: Faulty) -> dict[str, int]:
 
 
 def _draft(lines: list[str], labels: list[str], said: dict[str, int], start: int) -> Draft:
-    from rdkit import Chem, rdBase
+    from rdkit import Chem
 
-    with rdBase.BlockLogs():
-        try:
-            molecule = Chem.MolFromMolBlock("\n".join(lines) + "\n", sanitize=False, removeHs=False)
-        except (RuntimeError, ValueError):
-            molecule = None
+    with library_refusals(f"line {start}: in the record that starts here"):
+        molecule = Chem.MolFromMolBlock("\n".join(lines) + "\n", sanitize=False, removeHs=False)
         if molecule is None or molecule.GetNumAtoms() != len(labels):
-            raise Unreadable(
-                f"line {start}: the record that starts here has bonds or properties that cannot be read"
-            )
-        try:
-            check_elements(molecule)
-            draft = _understood(molecule, lines)
-        except Unreadable as error:
-            raise Unreadable(f"line {start}: in the record that starts here, {error}") from None
+            raise Unreadable("bonds or properties cannot be read")
+        check_elements(molecule)
+        draft = _understood(molecule, lines)
     isotopes = isotope_notes(labels) or isotopes_left_out(molecule)
     draft = replace(draft, title=one_line(lines[0]), notes=isotopes + draft.notes)
     return _with_statement(draft, said, start + 2)

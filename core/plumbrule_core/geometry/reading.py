@@ -118,8 +118,8 @@ def _format_for(suffix: str, text: str) -> ModuleType:
 
 
 def _finished(drafts: Sequence[Draft], name: str, origin: str, propose: Propose) -> tuple[Species, ...]:
-    if not drafts:
-        raise Unreadable("holds no species")
+    if not all(draft.atoms for draft in drafts):
+        raise Unreadable("holds no atoms")
     if len(drafts) > MOST_SPECIES:
         raise Unreadable(f"holds {len(drafts)} species; at most {MOST_SPECIES} are read at once")
     names = _names(drafts, name)

@@ -3,7 +3,7 @@
 from dataclasses import replace
 
 from plumbrule_core.errors import Unreadable
-from plumbrule_core.geometry.building import build, isotopes_left_out, sanitised
+from plumbrule_core.geometry.building import build, isotopes_left_out, library_refusals, sanitised
 from plumbrule_core.geometry.draft import Draft, Faulty
 
 SUFFIXES = (".smi",)
@@ -44,13 +44,11 @@ def draft_of(smiles: str, title: str = "") -> Draft:
         )
     with rdBase.BlockLogs():
         molecule = Chem.MolFromSmiles(smiles, sanitize=False) if smiles.isascii() else None
-        if molecule is None or molecule.GetNumAtoms() == 0:
-            raise Unreadable(
-                f"'{shown}' is neither a SMILES string (water is O, hydroxide is [OH-]) nor coordinates "
-                "(one line an atom: a symbol and three numbers in angstrom)"
-            )
-        try:
-            draft = build(sanitised(molecule), title)
-            return replace(draft, notes=isotopes_left_out(molecule) + draft.notes)
-        except Unreadable as error:
-            raise Unreadable(f"SMILES {shown}: {error}") from None
+    if molecule is None or molecule.GetNumAtoms() == 0:
+        raise Unreadable(
+            f"'{shown}' is neither a SMILES string (water is O, hydroxide is [OH-]) nor coordinates "
+            "(one line an atom: a symbol and three numbers in angstrom)"
+        )
+    with library_refusals(f"SMILES {shown}"):
+        draft = build(sanitised(molecule), title)
+    return replace(draft, notes=isotopes_left_out(molecule) + draft.notes)

@@ -4,6 +4,8 @@ import re
 
 _STATED = re.compile(r"(?i)(?<![\w.])(charge|multiplicity)\s*=\s*\"?([^\s,;\"]*)\"?[,;]?")
 _WHOLE = re.compile(r"([+-]?)(\d{1,4})(?:\.0*)?([+-]?)")
+LONGEST_COMMENT = 2000
+"""Characters in which a title is looked for."""
 _ANY_KEY = re.compile(r"[\w.:-]+=(?:\"[^\"]*\"|'[^']*'|\{[^}]*\}|\S*)")
 
 
@@ -36,7 +38,7 @@ def comment_for(charge: int, multiplicity: int, title: str) -> str:
 
 def title_in(comment: str) -> str:
     """What is left of a comment without its `key=value` pairs, on one line."""
-    return one_line(_ANY_KEY.sub(" ", _STATED.sub(" ", comment)))
+    return one_line(_ANY_KEY.sub(" ", _STATED.sub(" ", comment[:LONGEST_COMMENT])))
 
 
 def one_line(text: str) -> str:

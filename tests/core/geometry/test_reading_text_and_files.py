@@ -124,6 +124,9 @@ def test_ghost_atoms_are_refused_plainly(label):
         ("O 0 0 1e9\n", "line 1: 1e+09 is not a coordinate"),
         ("U 0 0 0\n", "line 1: 'U' is heavier than radon"),
         ("92 0 0 0\n", "line 1: atomic number 92 is not known; 1 (H) to 86 (Rn) are"),
+        ("O 0 0 0\nenergy=3\n", "line 2: 'energy=3' is not a whole atom"),
+        ("O 0 0 0\nH 0 0 =1\n", "line 2: '=1' is not a number"),
+        ("# O 0 0 0\n", "holds no atoms"),
         ("  \n \n", "is empty"),
     ],
 )

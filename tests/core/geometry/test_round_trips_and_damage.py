@@ -115,6 +115,27 @@ def test_a_file_with_wrong_bytes_is_read_or_refused(tmp_path, suffix, data, flip
     read_or_refused(path)
 
 
+@pytest.mark.timeout(20)
+@pytest.mark.parametrize(
+    "text",
+    [
+        "1" * 3_000_000 + "a 0 0 0",
+        "1\n" + "a" * 3_000_000 + "\nHe 0 0 0",
+        "1\ncharge=" + "1" * 3_000_000 + "\nHe 0 0 0",
+        "He 0 0 " + "1" * 3_000_000,
+        "C" * 3_000_000,
+        "\n" * 3_000_000 + "V2000",
+        "<" * 3_000_000,
+        "[" * 3_000_000,
+        '{"symbols":' + "[" * 3_000_000,
+    ],
+    ids=range(9),
+)
+def test_a_monstrous_line_is_dealt_with_at_once(text):
+    with contextlib.suppress(Unreadable):
+        assert read_text(text)
+
+
 @quick
 @given(text=st.text(max_size=200))
 def test_any_pasted_text_is_read_or_refused(text):

@@ -76,7 +76,7 @@ def build(molecule: Any, title: str = "") -> Draft:
 
 
 def atoms_of(molecule: Any) -> tuple[Atom, ...]:
-    """The atoms of an RDKit molecule with coordinates, in angstrom; raises Unreadable if one is too far out."""
+    """The atoms of an RDKit molecule in angstrom; raises Unreadable if one is too far out."""
     positions = molecule.GetConformer().GetPositions()
     try:
         return tuple(

@@ -44,6 +44,7 @@ class Window(QMainWindow):
         self._begin = begin
         self._painted = False
         self._ended = False
+        self._remembered: Path | None = None
         self.resize(1280, 800)
         self.setMinimumSize(940, 600)
         self.setAcceptDrops(False)
@@ -145,7 +146,7 @@ class Window(QMainWindow):
             watched.removeEventFilter(self)
             make: list[Callable[[], object]] = [partial(self.stack.page, name) for name in PAGES]
             begin = partial(self._begin, self.desk)
-            stages = (make[0], begin, *make[1:], self.three_d.ask)
+            stages: list[Callable[[], object]] = [make[0], begin, *make[1:], self.three_d.ask]
             self._stages: Iterator[Callable[[], object]] = iter(stages)
             QTimer.singleShot(0, self, self._next_stage)
         return super().eventFilter(watched, event)
@@ -210,11 +211,11 @@ class Window(QMainWindow):
 
     def ask_export(self) -> None:
         """Choose where the export goes and, by its ending, in which format."""
-        kinds = self.desk.offer.exports or {}
-        filters = ";;".join(f"{words} (*{suffix})" for suffix, words in kinds.items())
-        name, _ = QFileDialog.getSaveFileName(self, "Export this question", "", filters)
+        kinds = {f"{words} (*{suffix})": suffix for suffix, words in (self.desk.offer.exports or {}).items()}
+        name, kind = QFileDialog.getSaveFileName(self, "Export this question", "", ";;".join(kinds))
         if name:
-            self.desk.export(Path(name))
+            path = Path(name)
+            self.desk.export(path if path.suffix else path.with_suffix(kinds.get(kind, "")))
 
     def show_about(self) -> QMessageBox:
         """Version, libraries and licences."""
@@ -230,7 +231,8 @@ class Window(QMainWindow):
         self.setWindowTitle(f"{file.path.name if file.path else 'Unsaved casebook'} \u2013 Plumbrule")
         self.banner.keep("read_only", file.why_read_only)
         self.banner.keep("damage", " ".join(file.damaged), "stop")
-        if file.path:
+        if file.path and file.path != self._remembered:
+            self._remembered = file.path
             self.settings.remember(file.path)
 
     def _refresh_actions(self) -> None:

@@ -5,6 +5,7 @@ from collections.abc import Callable, Iterator
 
 import pytest
 from PySide6.QtCore import QCoreApplication, QEvent
+from shiboken6 import isValid
 
 from plumbrule_core.documents.species import Atom, Species
 from plumbrule_desktop import look
@@ -86,7 +87,7 @@ def open_window(qtbot, qapp) -> Iterator[Callable[..., Window]]:
         return window
 
     yield make
-    for window in opened:
+    for window in filter(isValid, opened):
         if window.desk.running:
             window.desk.stop()
             qtbot.waitUntil(lambda window=window: not window.desk.running, timeout=LONG)

@@ -1,10 +1,12 @@
 """The real window, driven as a person drives it."""
 
+import sqlite3
 from collections.abc import Callable
+from contextlib import closing
 from pathlib import Path
 
 import pytest
-from PySide6.QtCore import QMimeData, Qt, QUrl
+from PySide6.QtCore import QCoreApplication, QEvent, QMimeData, Qt, QUrl
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import QApplication, QMessageBox, QPushButton
 
@@ -244,7 +246,9 @@ def test_a_window_closed_during_a_run_asks_stops_and_waits(qtbot, window: Window
     stop = next(button for button in box.buttons() if button.text() == "Stop and close")
     stop.click()
     qtbot.waitUntil(lambda: not window.desk.running, timeout=LONG)
-    qtbot.waitUntil(lambda: len(window.findChildren(QMessageBox)) > 0 or not window.isVisible(), timeout=LONG)
+    texts = lambda: [box.text() for box in window.findChildren(QMessageBox)]  # noqa: E731
+    qtbot.waitUntil(lambda: "This casebook is not saved." in texts(), timeout=LONG)
+    assert window.isVisible()
 
 
 def test_an_unsaved_casebook_is_not_dropped_without_a_question(qtbot, with_water: Window) -> None:
@@ -257,6 +261,51 @@ def test_an_unsaved_casebook_is_not_dropped_without_a_question(qtbot, with_water
 
 def test_an_untouched_casebook_closes_without_a_question(qtbot, window: Window) -> None:
     assert window.close()
+
+
+def test_a_saved_casebook_closes_without_a_question_and_holds_all_that_was_done(
+    qtbot, open_window: Callable[..., Window], water: Species, tmp_path: Path
+) -> None:
+    path = tmp_path / "mine.plumb"
+    window = open_window(lambda desk: desk.open(path))
+    window.desk.add_species((water,), "Paste")
+    assert window.close()
+    again = open_window(lambda desk: desk.open(path))
+    assert again.desk.brief.species == (water,)
+    assert not again.desk.casebook.read_only
+
+
+def test_a_closed_window_leaves_no_window_no_picture_and_no_thread_behind(
+    qtbot, open_window: Callable[..., Window], water: Species
+) -> None:
+    before = set(QApplication.topLevelWidgets())
+    for _ in range(3):
+        window = open_window()
+        window.desk.add_species((water,), "Paste")
+        qtbot.waitUntil(lambda window=window: window.three_d.answer is not None, timeout=LONG)
+        view = build_page(window).molecule.view
+        window.leaving.leave()
+        assert not view.three_d
+        window.deleteLater()
+    QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)
+    left = [widget for widget in set(QApplication.topLevelWidgets()) - before if isinstance(widget, Window)]
+    assert left == []
+
+
+def test_a_damaged_question_is_said_above_the_pages(
+    qtbot, open_window: Callable[..., Window], water: Species, tmp_path: Path
+) -> None:
+    path = tmp_path / "hurt.plumb"
+    desk = open_window(lambda desk: desk.open(path))
+    desk.desk.add_species((water,), "Paste")
+    desk.desk.add_question()
+    qtbot.waitUntil(lambda: len(desk.desk.entries) == 2, timeout=LONG)
+    assert desk.close()
+    with closing(sqlite3.connect(path)) as db, db:
+        db.execute("UPDATE briefs SET document = 'x' WHERE id = (SELECT min(id) FROM briefs)")
+    hurt = open_window(lambda desk: desk.open(path))
+    assert any("damaged" in text for text in hurt.banner.texts)
+    assert len(hurt.desk.entries) == 1
 
 
 def test_a_read_only_casebook_says_so_and_blocks_its_controls(

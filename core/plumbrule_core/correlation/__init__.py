@@ -1,1 +1,1 @@
-"""Strong correlation: solvers of the active space, entropies, the proposal, tailored coupled cluster, growth."""
+"""Strong correlation: active-space solvers, entropies, the proposal, tailored coupled cluster, growth."""

@@ -48,8 +48,8 @@ def value_words(value: ReadingValue | str, unit: str = "") -> str:
     if isinstance(value, float | int):
         return f"{value:.4g}".replace("-", MINUS) + behind
     telling = [one for one in value if 0.02 < one < 1.98] or list(value)
-    shown = ", ".join(f"{one:.2f}" for one in telling[:6])
-    more = " \u2026" if len(telling) > 6 else ""
+    shown = ", ".join(f"{one:.2f}" for one in telling[:4])
+    more = " \u2026" if len(telling) > 4 else ""
     return f"{shown}{more}{behind}"
 
 

@@ -22,6 +22,17 @@ FRACTION_ROLE = TASK_ROLE + 1
 STATE_ROLE = TASK_ROLE + 2
 """The state's name, `slipping` where a running task is beyond its forecast."""
 
+ROLES = frozenset(
+    {
+        int(Qt.ItemDataRole.DisplayRole),
+        int(Qt.ItemDataRole.ToolTipRole),
+        int(Qt.ItemDataRole.AccessibleTextRole),
+        TASK_ROLE,
+        FRACTION_ROLE,
+        STATE_ROLE,
+    }
+)
+
 
 class Column(IntEnum):
     """The columns of the list."""
@@ -121,8 +132,12 @@ def _time(task: Task, state: TaskState, used: float | None) -> str:
 
 
 def _memory(task: Task, state: TaskState) -> str:
-    used = UNKNOWN if state.result is None else memory(state.result.memory_mb)
-    return f"{used} / {memory(task.forecast.memory_mb)}"
+    forecast = memory(task.forecast.memory_mb)
+    if state.result is None:
+        return f"{UNKNOWN} / {forecast}"
+    used = memory(state.result.memory_mb)
+    same_unit = used[-2:] == forecast[-2:]
+    return f"{used[:-3] if same_unit else used} / {forecast}"
 
 
 def _sum_used(seen: list[tuple[Task, TaskState]], watch: Stopwatch, now: float) -> str:
@@ -200,7 +215,7 @@ class TaskModel(QAbstractItemModel):
 
     def data(self, index: Index, role: int = Qt.ItemDataRole.DisplayRole) -> Any:
         """Text, tip, spoken text, and what the delegate draws from."""
-        if not index.isValid():
+        if role not in ROLES or not index.isValid():
             return None
         row = self._row(index)
         match role:

@@ -5,7 +5,7 @@ from PySide6.QtGui import QColor, QFontMetricsF, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QSizePolicy, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.brief import Brief
-from plumbrule_core.documents.findings import Judgement, Level
+from plumbrule_core.documents.findings import Judgement, Level, Verdict
 from plumbrule_desktop.look import colours
 from plumbrule_desktop.plots.ticks import step, tick_text, ticks
 from plumbrule_desktop.state.amounts import energy, unit_words
@@ -115,6 +115,17 @@ class AnswerScale(QWidget):
         )
 
 
+def said_once(verdict: Verdict) -> tuple[str, tuple[str, ...]]:
+    """Headline and reasons without what stands right above them: the level in words, the headline itself."""
+    headline = verdict.headline
+    opening = f"{verdict.level}:"
+    if headline.lower().startswith(opening):
+        rest = headline[len(opening) :].strip()
+        headline = rest[:1].upper() + rest[1:]
+    fresh = tuple(reason for reason in verdict.reasons if reason.rstrip(".").lower() not in headline.lower())
+    return headline, fresh
+
+
 class AnswerCard(Card):
     """The number with its verdict; struck out and grey where it is not to be relied on."""
 
@@ -150,10 +161,11 @@ class AnswerCard(Card):
         verdict = judgement.verdict
         self.level.setText(LEVEL_WORDS[verdict.level])
         tint(self.level, verdict.level)
-        self.headline.setText(verdict.headline)
-        self.headline.setVisible(bool(verdict.headline))
-        self.reasons.setText("\n".join(f"\u2022 {reason}" for reason in verdict.reasons))
-        self.reasons.setVisible(bool(verdict.reasons))
+        headline, reasons = said_once(verdict)
+        self.headline.setText(headline)
+        self.headline.setVisible(bool(headline))
+        self.reasons.setText("\n".join(f"\u2022 {reason}" for reason in reasons))
+        self.reasons.setVisible(bool(reasons))
 
     def _show_number(self, brief: Brief, judgement: Judgement) -> None:
         answer, good = judgement.answer, can_be_relied_on(judgement)

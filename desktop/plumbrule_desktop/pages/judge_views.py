@@ -6,10 +6,10 @@ from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Judgement, SpeciesJudgement
 from plumbrule_desktop.models.grid import GridModel
 from plumbrule_desktop.models.readings import readings_table
-from plumbrule_desktop.pages.judge_answer import LEVEL_WORDS
+from plumbrule_desktop.pages.judge_answer import LEVEL_WORDS, said_once
 from plumbrule_desktop.plots.budget import BudgetPlot
 from plumbrule_desktop.plots.comparison import ComparisonPlot
-from plumbrule_desktop.plots.panel import PlotPanel, numbers_table
+from plumbrule_desktop.plots.panel import PlotPanel, fit_columns, numbers_table
 from plumbrule_desktop.plots.series import budget, comparison
 from plumbrule_desktop.state.amounts import MINUS
 from plumbrule_desktop.state.answer_text import within
@@ -90,7 +90,7 @@ class ReadingsView(QWidget):
         another = fresh.header != self.model.numbers.header
         self.model.show(fresh)
         if another or fresh.rows:
-            self.table.resizeColumnsToContents()
+            fit_columns(self.table)
         self.table.setMinimumHeight(min(MOST_HEIGHT, height_of(self.table)))
         self._empty.setVisible(not fresh.rows)
         self.table.setVisible(bool(fresh.rows))
@@ -125,11 +125,12 @@ def _species_card(one: SpeciesJudgement) -> Card:
     card = Card()
     verdict = one.verdict
     card.column.addWidget(label(f"{one.name} \u00b7 {one.formula}", "heading"))
-    level = label(LEVEL_WORDS[verdict.level] + (f": {verdict.headline}" if verdict.headline else ""))
+    headline, reasons = said_once(verdict)
+    level = label(LEVEL_WORDS[verdict.level] + (f": {headline}" if headline else ""))
     tint(level, verdict.level)
     card.column.addWidget(level)
-    if verdict.reasons:
-        card.column.addWidget(label("\n".join(f"\u2022 {reason}" for reason in verdict.reasons)))
+    if reasons:
+        card.column.addWidget(label("\n".join(f"\u2022 {reason}" for reason in reasons)))
     energies = "\n".join(
         f"{rung}: {value:.8f} hartree".replace(": -", f": {MINUS}") for rung, value in one.energies.items()
     )

@@ -1,9 +1,10 @@
 """The Watch page: the plan as a list of tasks, the chosen task in detail, the run as a whole."""
 
+import importlib
 import time
 
 from PySide6.QtCore import QItemSelectionModel, QModelIndex, Qt, QTimer, Signal
-from PySide6.QtGui import QResizeEvent
+from PySide6.QtGui import QCloseEvent, QResizeEvent
 from PySide6.QtWidgets import (
     QCheckBox,
     QHBoxLayout,
@@ -20,6 +21,7 @@ from plumbrule_desktop.models.tasks import TASK_ROLE, TaskModel, branches
 from plumbrule_desktop.pages.watch_list import TaskList
 from plumbrule_desktop.pages.watch_task import TaskView
 from plumbrule_desktop.plots.pace import Pace
+from plumbrule_desktop.state.clerk import Clerk
 from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.state.progress import Overall, Stopwatch, overall
 from plumbrule_desktop.state.wording import duration, forecast_words
@@ -62,6 +64,20 @@ class WatchPage(QWidget):
         for signal in (desk.brief_changed, desk.plan_changed, desk.run_changed):
             signal.connect(self._moved)
         self._moved()
+        self._clerk = Clerk("plumbrule-plots", self)
+        self._clerk.do(_import_plots, lambda _: self._prepare())
+
+    def _prepare(self) -> None:
+        """Do now what would hold up the window when the page is first shown during a run."""
+        self.task.prepare()
+        self._refresh()
+        for part in self.findChildren(QWidget):
+            part.ensurePolished()
+
+    def closeEvent(self, event: QCloseEvent) -> None:
+        """End the thread that fetches the plots."""
+        self._clerk.close()
+        super().closeEvent(event)
 
     def _arrange(self) -> None:
         head = Card()
@@ -196,6 +212,11 @@ class WatchPage(QWidget):
             return
         state = self._desk.state.tasks.get(key) or TaskState(task=key)
         self.task.show_task(task, state, self._watch.used(state, now))
+
+
+def _import_plots() -> None:
+    """In a thread: the plotting library takes most of a second to load."""
+    importlib.import_module("plumbrule_desktop.plots.convergence")
 
 
 def _no_plan(plan: Plan | None, faults: tuple[str, ...]) -> tuple[str, str]:

@@ -13,10 +13,13 @@ from PySide6.QtWidgets import (
 )
 
 from plumbrule_desktop.look import Colours, colours
-from plumbrule_desktop.models.tasks import FRACTION_ROLE, STATE_ROLE, Column, TaskModel
+from plumbrule_desktop.models.tasks import FRACTION_ROLE, STATE_ROLE, TASK_ROLE, Column, TaskModel
 
 Index = QModelIndex | QPersistentModelIndex
 BAR_HEIGHT = 8.0
+CALM = frozenset({"waiting", "running", "done", "reused"})
+WIDEST_NAME = 165
+"""A longer name is cut to so many points; its tool tip says it in full."""
 
 
 def state_colour(c: Colours, state: str) -> str:
@@ -32,24 +35,39 @@ def state_colour(c: Colours, state: str) -> str:
     }.get(state, c.unknown)
 
 
-class ProgressDelegate(QStyledItemDelegate):
-    """Draws the fraction as a bar with its percentage, and a state in its colour."""
+class NameDelegate(QStyledItemDelegate):
+    """Chains in bold."""
 
     def initStyleOption(self, option: QStyleOptionViewItem, index: Index) -> None:
-        """Chains in bold, states in their colour."""
+        """A chain has no task of its own."""
         super().initStyleOption(option, index)
-        if not index.parent().isValid():
-            option.font.setBold(index.column() == Column.TASK)
-        if index.column() == Column.STATE and not option.state & QStyle.StateFlag.State_Selected:
-            state = index.data(STATE_ROLE)
-            if state not in ("waiting", "done", "reused", "running"):
-                option.palette.setColor(option.palette.ColorRole.Text, QColor(state_colour(colours(), state)))
+        option.font.setBold(not index.data(TASK_ROLE))
+
+    def sizeHint(self, option: QStyleOptionViewItem, index: Index) -> QSize:
+        """A little air."""
+        size = super().sizeHint(option, index)
+        return QSize(size.width() + 8, max(size.height() + 6, 26))
+
+
+class StateDelegate(QStyledItemDelegate):
+    """What did not finish, or runs late, in its colour."""
+
+    def initStyleOption(self, option: QStyleOptionViewItem, index: Index) -> None:
+        """A chosen line keeps the colour of the choice."""
+        super().initStyleOption(option, index)
+        state = index.data(STATE_ROLE)
+        if state in CALM or option.state & QStyle.StateFlag.State_Selected:
+            return
+        option.palette.setColor(
+            option.palette.ColorRole.Text, QColor(state_colour(colours(option.widget), state))
+        )
+
+
+class ProgressDelegate(QStyledItemDelegate):
+    """Draws the fraction as a bar with its percentage."""
 
     def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: Index) -> None:
-        """The bar in the progress column, everything else as usual."""
-        if index.column() != Column.PROGRESS:
-            super().paint(painter, option, index)
-            return
+        """The ground of the line, then the bar."""
         self.initStyleOption(option, index)
         text, option.text = option.text, ""
         style = option.widget.style() if option.widget else None
@@ -79,11 +97,6 @@ class ProgressDelegate(QStyledItemDelegate):
         painter.drawText(place, Qt.AlignmentFlag.AlignVCenter | Qt.AlignmentFlag.AlignRight, text)
         painter.restore()
 
-    def sizeHint(self, option: QStyleOptionViewItem, index: Index) -> QSize:
-        """A little air."""
-        size = super().sizeHint(option, index)
-        return QSize(size.width() + 8, max(size.height() + 6, 26))
-
 
 class TaskList(QTreeView):
     """The plan's tasks grouped by chain."""
@@ -91,7 +104,9 @@ class TaskList(QTreeView):
     def __init__(self, model: TaskModel, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.setModel(model)
-        self.setItemDelegate(ProgressDelegate(self))
+        self.setItemDelegateForColumn(Column.TASK, NameDelegate(self))
+        self.setItemDelegateForColumn(Column.STATE, StateDelegate(self))
+        self.setItemDelegateForColumn(Column.PROGRESS, ProgressDelegate(self))
         self.setAccessibleName("Tasks of the plan")
         self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
         self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
@@ -113,3 +128,4 @@ class TaskList(QTreeView):
         self.expandAll()
         for column in (Column.TASK, Column.TIME):
             self.resizeColumnToContents(column)
+        self.setColumnWidth(Column.TASK, min(self.columnWidth(Column.TASK), WIDEST_NAME))

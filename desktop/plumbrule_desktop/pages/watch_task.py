@@ -103,6 +103,11 @@ class TaskView(Card):
         panel.plot.show_data(convergence(state.trace, task.spec.settings, task.spec.rung))  # type: ignore[attr-defined]
         panel.refresh()
 
+    def prepare(self) -> None:
+        """Make the plots before they are needed, so that the first trace does not hold up the window."""
+        if self._panel is None:
+            self._make_panel().hide()
+
     def _make_panel(self) -> PlotPanel:
         from plumbrule_desktop.plots.convergence import ConvergencePlot
 

@@ -5,7 +5,7 @@ from typing import Any
 
 import numpy as np
 import pyqtgraph as pg
-from PySide6.QtCore import QEvent, Qt, Signal
+from PySide6.QtCore import QEvent, QSize, Qt, Signal
 from PySide6.QtGui import QColor, QFont, QKeyEvent
 from PySide6.QtWidgets import QWidget
 
@@ -100,6 +100,10 @@ class ConvergencePlot(pg.GraphicsLayoutWidget):
         self._pace = Pace(self, self._redraw)
         self._wear()
         self.show_data(self._data)
+
+    def sizeHint(self) -> QSize:
+        """No more than it needs: the page decides how much room there is."""
+        return QSize(400, 215)
 
     def show_data(self, data: Convergence) -> None:
         """Show this trace."""

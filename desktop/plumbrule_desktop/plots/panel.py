@@ -21,6 +21,8 @@ from plumbrule_desktop.plots.pictures import FILTER, file_name, save_picture
 from plumbrule_desktop.plots.series import Numbers
 from plumbrule_desktop.widgets.card import label
 
+WIDEST_COLUMN = 210
+"""In points; the tool tip of a cell says it in full."""
 HINT = "Read off the numbers one by one with the arrow keys."
 
 
@@ -49,6 +51,13 @@ def numbers_table(model: GridModel, name: str) -> QTableView:
     table.horizontalHeader().setStretchLastSection(True)
     table.horizontalHeader().setDefaultAlignment(Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter)
     return table
+
+
+def fit_columns(table: QTableView) -> None:
+    """Every column as wide as it needs, up to a limit; the last takes what is left."""
+    table.resizeColumnsToContents()
+    for column in range(table.model().columnCount()):
+        table.setColumnWidth(column, min(table.columnWidth(column), WIDEST_COLUMN))
 
 
 class PlotPanel(QWidget):
@@ -118,7 +127,7 @@ class PlotPanel(QWidget):
         fresh = not self._model.numbers.header
         self._model.show(self._plot.numbers())  # type: ignore[attr-defined]
         if fresh:
-            self.table.resizeColumnsToContents()
+            fit_columns(self.table)
 
     def _ask_where(self) -> None:
         chosen, kind = QFileDialog.getSaveFileName(

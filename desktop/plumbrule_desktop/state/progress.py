@@ -9,6 +9,8 @@ from plumbrule_desktop.state.wording import duration
 ENDED: frozenset[Progressing] = frozenset({"done", "reused", "failed", "died", "stopped"})
 ANSWERED: frozenset[Progressing] = frozenset({"done", "reused"})
 TROUBLED: frozenset[Progressing] = frozenset({"failed", "died", "stopped"})
+GRACE = 3.0
+"""Seconds that a task may take in any case before it is called late."""
 ALMOST = 0.97
 """A running task that has used up its forecast is shown this far, never as finished."""
 
@@ -63,8 +65,8 @@ def share(task: Task, state: TaskState, used: float | None) -> float:
 
 
 def is_slipping(task: Task, state: TaskState, used: float | None) -> bool:
-    """Whether a running task has gone beyond the high end of its forecast."""
-    return state.state == "running" and used is not None and used > task.forecast.seconds_high
+    """Whether a running task has gone beyond the high end of its forecast; a few seconds are no matter."""
+    return state.state == "running" and used is not None and used > max(task.forecast.seconds_high, GRACE)
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,9 +90,8 @@ class Overall:
             parts.append(f"{self.troubled} not finished")
         if self.running and self.used is not None:
             parts.append(f"{duration(self.used)} so far")
-            parts.append(
-                "slipping: longer than the forecast's high end" if self.slipping else self._left_words
-            )
+            parts.append(self._left_words)
+            parts.extend(["slipping beyond the forecast"] if self.slipping else [])
         elif self.used is not None and self.answered == self.tasks:
             parts.append(f"took {duration(self.used)}")
         return ", ".join(parts)
@@ -110,7 +111,7 @@ def overall(plan: Plan, state: RunState, watch: Stopwatch, now: float, running: 
     left = pace * sum(_left(task, one, used) for task, one, used in taken)
     used_up = watch.run_used(now)
     high = sum(task.forecast.seconds_high for task, one in seen if one.state != "reused")
-    late = any(is_slipping(*each) for each in taken) or (used_up is not None and used_up > high)
+    late = used_up is not None and used_up + left > max(high, GRACE)
     return Overall(
         answered=sum(one.state in ANSWERED for _, one in seen),
         tasks=len(seen),

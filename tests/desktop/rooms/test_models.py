@@ -70,7 +70,7 @@ def test_a_row_says_state_time_and_memory_against_the_forecast(made: SimpleNames
 
     assert cell(0, Column.STATE) == "done"
     assert cell(0, Column.TIME) == "2 s / 2 s"
-    assert cell(0, Column.MEMORY) == "210 MB / 300 MB"
+    assert cell(0, Column.MEMORY) == "210 / 300 MB"
     assert cell(2, Column.STATE) == "died"
     assert cell(3, Column.TIME) == "\u2013 / 20 s"
     tip = model.index(2, 0, chain).data(Qt.ItemDataRole.ToolTipRole)

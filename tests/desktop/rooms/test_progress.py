@@ -3,7 +3,7 @@ from types import SimpleNamespace
 import pytest
 
 from plumbrule_core.documents.run_state import RunState, TaskState
-from plumbrule_desktop.state.progress import Stopwatch, overall, share
+from plumbrule_desktop.state.progress import Stopwatch, is_slipping, overall, share
 from plumbrule_desktop.state.task_words import state_words, trouble_words
 
 
@@ -21,12 +21,20 @@ def test_a_run_halfway_says_what_is_done_and_about_how_long_is_left(made: Simple
     assert whole.words == "2 of 8 tasks done, 6 s so far, about 35 s left"
 
 
-def test_a_run_beyond_the_high_end_of_a_forecast_is_slipping(made: SimpleNamespace):
+def test_a_task_beyond_the_high_end_of_its_forecast_is_slipping(made: SimpleNamespace):
+    plan = _plan(made)
+    task, state = plan.tasks[2], made.state_of(plan, "done", "done", "running").tasks[plan.tasks[2].id]
+    assert not is_slipping(task, state, 23.9)
+    assert is_slipping(task, state, 24.1)
+    assert not is_slipping(plan.tasks[5], made.state_of(plan, *["running"] * 6).tasks[plan.tasks[5].id], 2.9)
+
+
+def test_a_run_that_will_end_beyond_the_high_end_of_its_forecast_is_slipping(made: SimpleNamespace):
     plan, watch = _plan(made), Stopwatch()
     state = made.state_of(plan, "done", "done", "running")
     watch.follow(state, True, 0.0)
-    assert not overall(plan, state, watch, 23.9, True).slipping
-    late = overall(plan, state, watch, 24.1, True)
+    assert not overall(plan, state, watch, 30.0, True).slipping
+    late = overall(plan, state, watch, 62.0, True)
     assert late.slipping
     assert "slipping" in late.words
     assert late.fraction < 1.0

@@ -198,3 +198,27 @@ def test_another_casebook_is_not_opened_over_a_run(qtbot, fresh_desk: Desk, hydr
     assert "Stop it" in said.args[0]
     assert fresh_desk.brief.species == (hydrogen,)
     qtbot.waitUntil(lambda: not fresh_desk.running, timeout=LONG)
+
+
+def test_an_answer_to_an_older_edit_never_takes_back_a_newer_one(
+    qtbot, monkeypatch, fresh_desk: Desk, water: Species
+) -> None:
+    fresh_desk.add_species((water,), "Paste")
+    settled(qtbot, fresh_desk)
+    seen: list[str] = []
+    refresh = fresh_desk._refresh
+
+    def edit_between(reset: bool = False) -> None:
+        """The answers to the first edit are there but not handed over yet when the second is made."""
+        refresh(reset)
+        if not seen:
+            fresh_desk._clerk._pool.submit(lambda: None).result(timeout=60)
+            fresh_desk.brief_changed.connect(lambda: seen.append(fresh_desk.brief.recipe.basis[0]))
+            fresh_desk.edit(changes.set_recipe("basis", "cc-pVQZ"), "Second")
+
+    monkeypatch.setattr(fresh_desk, "_refresh", edit_between)
+    fresh_desk.edit(changes.set_recipe("basis", "cc-pVDZ"), "First")
+    qtbot.waitUntil(lambda: bool(seen), timeout=LONG)
+    settled(qtbot, fresh_desk)
+    assert set(seen) <= {"cc-pVQZ"}
+    assert fresh_desk.brief.recipe.basis == ("cc-pVQZ",)

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 from plumbrule_core.documents.plan import Forecast, Machine
 from plumbrule_core.rungs.costs import field_forecast
-from plumbrule_core.rungs.hartree_fock import field_arrays, field_used
+from plumbrule_core.rungs.hartree_fock import field_arrays, field_used, removed_functions
 from plumbrule_core.rungs.molecule import empty_mean_field
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
 from plumbrule_core.rungs.scf.solve import solve
@@ -45,7 +45,7 @@ class Functional:
             energy=float(field.e_tot),
             reference=reference,
             iterations=solved.iterations,
-            notes=solved.notes,
+            notes=(*solved.notes, *removed_functions(field)),
             used={
                 **field_used(given, field, solved),
                 "functional": f"{self.xc} in libxc, no dispersion correction",

@@ -65,7 +65,7 @@ class HartreeFock:
             reference=reference_kind(given.spec),
             correlation=0.0,
             iterations=solved.iterations,
-            notes=solved.notes,
+            notes=(*solved.notes, *removed_functions(mean_field)),
             used=field_used(given, mean_field, solved),
             arrays=field_arrays(mean_field),
         )
@@ -77,6 +77,15 @@ def core_orbitals(spec: TaskSpec, mean_field: Any) -> int:
         return 0
     symbols = [atom.symbol for atom in spec.species.atoms]
     return min(frozen_orbitals(symbols, basis_of(spec)), min(mean_field.mol.nelec))
+
+
+def removed_functions(mean_field: Any) -> tuple[str, ...]:
+    """A note where functions of the basis depend on each other so much that some were left out."""
+    removed = mean_field.mol.nao - np.shape(mean_field.mo_coeff)[-1]
+    if not removed:
+        return ()
+    many = f"{removed} combination{'s' if removed > 1 else ''} of basis functions"
+    return (f"{many} left out, because the basis is nearly linearly dependent (eigenvalue below 1e-6)",)
 
 
 def field_used(given: Given, mean_field: Any, solved: Solved) -> dict[str, str]:

@@ -43,7 +43,7 @@ def build_molecule(spec: TaskSpec, memory_mb: float) -> Any:
     if molecule.ecp and settings.relativity == "X2C":
         raise PlumbruleError(
             f"{settings.basis} replaces inner electrons of {', '.join(sorted(molecule.ecp))} by a potential "
-            "that already holds relativity, so X2C cannot be added: choose no relativity, or an all-electron basis"
+            "that already holds relativity, so X2C cannot be added: choose no relativity, or another basis"
         )
     return molecule.build()
 
@@ -77,6 +77,9 @@ def reference_kind(spec: TaskSpec) -> ReferenceKind:
 
 def empty_mean_field(given: Given, functional: str = "") -> Any:
     """A mean field that has not run: HF, or Kohn-Sham where a functional is named."""
+    from pyscf.scf import hf
+
+    hf.MUTE_CHKFILE = True  # the library's temporary checkpoint files: our shelf keeps the orbitals
     molecule, spec = molecule_of(given), given.spec
     mean_field = _class_of(reference_kind(spec), bool(functional))(molecule)
     if functional:
@@ -87,7 +90,6 @@ def empty_mean_field(given: Given, functional: str = "") -> Any:
     if spec.settings.relativity == "X2C":
         mean_field = mean_field.x2c()
     mean_field.max_memory = given.memory_mb
-    mean_field.chkfile = None
     return mean_field
 
 

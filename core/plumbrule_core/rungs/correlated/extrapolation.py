@@ -24,15 +24,16 @@ class Extrapolation:
         self.previous = start
         self.vectors: list[Vector] = []
         self.errors: list[Vector] = []
+        self._products = np.zeros((0, 0))
 
     def __call__(self, vector: Vector) -> Vector:
         """Take in a new vector, whose error is its distance from the last result; return the next result."""
-        self.vectors.append(vector)
-        self.errors.append(vector - self.previous)
-        del self.vectors[: -self.space], self.errors[: -self.space]
-        weights = _weights(self.errors)
-        self.previous = np.einsum("k,kx->x", weights, np.stack(self.vectors)) if len(weights) > 1 else vector
-        return self.previous
+        self._add(vector, vector - self.previous)
+        result = np.zeros_like(vector)
+        for weight, kept in zip(_weights(self._products), self.vectors, strict=True):
+            result += weight * kept
+        self.previous = result
+        return result
 
     def state(self) -> dict[str, np.ndarray]:
         """What is needed to carry on; the memory in single precision, which its use does not feel."""
@@ -46,9 +47,19 @@ class Extrapolation:
     def carried_on(cls, state: Mapping[str, np.ndarray], space: int = SPACE) -> "Extrapolation":
         """The extrapolation as it was when `state` was taken."""
         restored = cls(np.array(state["amplitudes"], dtype=float), space)
-        restored.vectors = [row.astype(float) for row in state["vectors"]][-space:]
-        restored.errors = [row.astype(float) for row in state["errors"]][-space:]
+        for vector, error in zip(state["vectors"], state["errors"], strict=True):
+            restored._add(vector.astype(float), error.astype(float))
         return restored
+
+    def _add(self, vector: Vector, error: Vector) -> None:
+        self.vectors.append(vector)
+        self.errors.append(error)
+        del self.vectors[: -self.space], self.errors[: -self.space]
+        count = len(self.errors)
+        products = np.zeros((count, count))
+        products[:-1, :-1] = self._products[-(count - 1) :, -(count - 1) :] if count > 1 else 0
+        products[-1] = products[:, -1] = [error @ other for other in self.errors]
+        self._products = products
 
 
 def space_for(size: int, memory_mb: float) -> int:
@@ -57,10 +68,9 @@ def space_for(size: int, memory_mb: float) -> int:
     return max(SMALLEST_SPACE, min(SPACE, fitting))
 
 
-def _weights(errors: list[Vector]) -> Vector:
-    """Weights that sum to one and make the combined error smallest."""
-    count = len(errors)
-    products = np.array([[a @ b for b in errors] for a in errors])
+def _weights(products: Vector) -> Vector:
+    """Weights that sum to one and make the combined error smallest, from the products of the errors."""
+    count = len(products)
     system = np.ones((count + 1, count + 1))
     system[-1, -1] = 0
     system[:-1, :-1] = products / max(products.diagonal().max(), np.finfo(float).tiny)

@@ -55,7 +55,7 @@ class Iterations:
 def iterate(
     given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mapping[str, np.ndarray] | None
 ) -> Iterations:
-    """Run the solver to its end, from the checkpoint where there is one that fits; raises Stopped, PlumbruleError."""
+    """Run the solver to its end, from the checkpoint where one fits; raises Stopped, PlumbruleError."""
     settings = given.spec.settings
     solver.conv_tol, solver.conv_tol_normt = settings.cc_tolerance, settings.cc_residual
     solver.max_cycle, solver.diis = MOST_ITERATIONS, False

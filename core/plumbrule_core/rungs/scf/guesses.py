@@ -5,7 +5,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from plumbrule_core.elements import ELEMENTS
-from plumbrule_core.rungs.scf.ladder import Measure, run
+from plumbrule_core.rungs.scf.ladder import Measure, guessed_density, run
 from plumbrule_core.rungs.scf.watch import Watch
 from plumbrule_core.units import KJ_PER_HARTREE
 
@@ -41,12 +41,7 @@ def search(mean_field: Any, watch: Watch) -> Start:
     found: dict[str, tuple[bool, float, Any]] = {}
     for guess, words in GUESSES.items():
         watch.begin(f"guess: {words}")
-        run(
-            mean_field,
-            Measure(name=guess, cycles=40),
-            watch,
-            mean_field.get_init_guess(mean_field.mol, guess),
-        )
+        run(mean_field, Measure(name=guess, cycles=40), watch, guessed_density(mean_field, guess))
         found[guess] = (mean_field.converged, float(mean_field.e_tot), mean_field.make_rdm1())
     mean_field.conv_tol, mean_field.conv_tol_grad = tight
     winner = min(found, key=lambda guess: (not found[guess][0], found[guess][1]))

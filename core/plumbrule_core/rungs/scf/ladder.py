@@ -1,5 +1,6 @@
 """The ladder of measures that brings a field to convergence, cheapest first."""
 
+import warnings
 from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any
@@ -64,7 +65,7 @@ def converge(mean_field: Any, first_guess: str, watch: Watch, name: str, start: 
     course = course_of(watch.energies)
     raise PlumbruleError(
         f"the self-consistent field of {name} did not converge in {watch.iterations} iterations with any "
-        f"measure, second order included: {COURSES[course]} ({course}). Nothing that builds on it was computed. "
+        f"measure, second order included: {COURSES[course]} ({course}). Nothing that builds on it was done. "
         "Look at the geometry, the charge and the unpaired electrons first, then try a smaller basis"
     )
 
@@ -106,5 +107,15 @@ def descend(
 
 def _density(mean_field: Any, measure: Measure, best: tuple[float, Any, Any] | None) -> Any:
     if measure.guess or best is None:
-        return mean_field.get_init_guess(mean_field.mol, measure.guess or "minao")
+        return guessed_density(mean_field, measure.guess or "minao")
     return mean_field.make_rdm1(best[1], best[2])
+
+
+def guessed_density(mean_field: Any, guess: str) -> Any:
+    """The density of a starting guess, by the library's name for it."""
+    with warnings.catch_warnings():
+        # PySCF 2.14 builds its atomic densities with a function that it has itself deprecated.
+        warnings.filterwarnings(
+            "ignore", message="remove_linear_dep_ is deprecated", category=DeprecationWarning
+        )
+        return mean_field.get_init_guess(mean_field.mol, guess)

@@ -36,7 +36,7 @@ def _pieces(case: Case, view: SpeciesView) -> Finding | None:
 
 def _origin(case: Case) -> Iterator[Finding]:
     for kind, headline in (
-        ("force field", "The {geometry} of {names} built by a force field."),
+        ("force field", "The {geometry} of {names} built, not optimised."),
         ("unknown", "Nobody said where the {geometry} of {names} from."),
     ):
         named = [one for one in case.species if origin_of(one) == kind]

@@ -83,8 +83,8 @@ def test_mp2_natural_occupations_are_those_of_the_librarys_density(climb):
 
 
 def test_m_follows_its_definition():
-    # O. Tishchenko, J. Zheng and D. G. Truhlar, J. Chem. Theory Comput. 4, 1208 (2008): two electrons evenly in
-    # two orbitals give 1, a closed shell 0, and a clean doublet 0.
+    # O. Tishchenko, J. Zheng and D. G. Truhlar, J. Chem. Theory Comput. 4, 1208 (2008): two electrons
+    # evenly in two orbitals give 1, a closed shell 0, and a clean doublet 0.
     assert m_diagnostic((2.0, 1.0, 1.0, 0.0), 2, 0) == pytest.approx(1)
     assert m_diagnostic((2.0, 2.0, 0.0), 2, 0) == 0
     assert m_diagnostic((2.0, 1.0, 0.0), 1, 1) == 0

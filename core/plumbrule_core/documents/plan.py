@@ -2,6 +2,7 @@
 
 from typing import Literal
 
+from plumbrule_core.documents.active_space import SpaceRequest
 from plumbrule_core.documents.base import Document, digest_of
 from plumbrule_core.documents.faults import Fault
 from plumbrule_core.documents.recipe import Core, Reference, Relativity
@@ -66,16 +67,20 @@ class TaskSpec(Document):
     rung: str
     settings: Settings
     versions: str
+    space: SpaceRequest | None = None
+    """How this task gets its active space; None for rungs that need none."""
 
     @property
     def identity(self) -> str:
         """The same identity has the same number: the stored result is reused."""
+        space = {} if self.space is None else {"space": self.space.to_data()}
         return digest_of(
             {
                 "species": self.species.content,
                 "rung": self.rung,
                 "settings": self.settings.to_data(),
                 "versions": self.versions,
+                **space,
             }
         )
 

@@ -4,6 +4,7 @@ from typing import Annotated
 
 from pydantic import Field
 
+from plumbrule_core.documents.active_space import GrowthPoint, Space
 from plumbrule_core.documents.base import Document, FrozenMap
 
 ReadingValue = bool | float | tuple[float, ...]
@@ -49,6 +50,10 @@ class Result(Document):
     """What happened on the way, for the log and the report: `followed an instability 0.7 kJ/mol down`."""
     used: FrozenMap[str, str] = Field(default_factory=dict)
     """What was really used: guess, frozen orbitals, density fitting basis, threads, library versions."""
+    space: Space | None = None
+    """The active space that the energy stands on, where there is one."""
+    growth: tuple[GrowthPoint, ...] = ()
+    """How the energies move as the active space grows, smallest space first."""
 
     def reading(self, name: str) -> ReadingValue | None:
         """The value of one reading, or None."""

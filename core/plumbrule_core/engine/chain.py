@@ -137,6 +137,8 @@ class Chain:
             arrays={name: save_array(blobs, array) for name, array in outcome.arrays.items()},
             notes=(*outcome.notes, *notes),
             used={**self._versions, "threads": str(self._order.threads), **outcome.used},
+            space=outcome.space,
+            growth=outcome.growth,
             seconds=time.perf_counter() - begun,
             memory_mb=memory.mb(),
         )

@@ -6,6 +6,8 @@ from typing import Any, Literal, Protocol
 
 import numpy as np
 
+from plumbrule_core.correlation.protocol import Solved
+from plumbrule_core.documents.active_space import GrowthPoint, Space
 from plumbrule_core.documents.plan import Forecast, Machine, TaskSpec
 
 Kind = Literal["wave function", "density functional"]
@@ -59,6 +61,10 @@ class Outcome:
     notes: tuple[str, ...] = ()
     used: Mapping[str, str] = field(default_factory=dict)
     arrays: Mapping[str, np.ndarray] = field(default_factory=dict)
+    space: Space | None = None
+    """The active space that the energy stands on, where there is one."""
+    growth: tuple[GrowthPoint, ...] = ()
+    """Energies at each size of the growing space, smallest first."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -96,6 +102,15 @@ class Bench:
     coupled_cluster: Any = None
     triples: float | None = None
     """The (T) correction in hartree."""
+    space: Space | None = None
+    """The chosen active space, in the orbitals of the reference; left by the rung "Active space"."""
+    solved: Solved | None = None
+    """The wave function of `space`."""
+    growth_spaces: tuple[Space, ...] = ()
+    """The sizes to follow, each within the next, smallest first, the chosen one among them or not; empty
+    where growth is not asked."""
+    tailored: tuple[Any, ...] = ()
+    """The tailored solutions (`correlation.tailored.Tailored`), one a size, left by TCCSD for (T)."""
     outcomes: dict[str, Outcome] = field(default_factory=dict)
 
 

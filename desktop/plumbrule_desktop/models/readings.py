@@ -39,7 +39,7 @@ def reading_name(name: str) -> str:
 
 
 def value_words(value: ReadingValue | str, unit: str = "") -> str:
-    """A value with its unit; of a list the values that say most, those away from 0 and 2."""
+    """A value with its unit; of a list of occupations those that say most, away from 0 and 2."""
     behind = f" {unit}" if unit else ""
     if isinstance(value, bool):
         return "yes" if value else "no"
@@ -47,7 +47,9 @@ def value_words(value: ReadingValue | str, unit: str = "") -> str:
         return f"{value}{behind}"
     if isinstance(value, float | int):
         return f"{value:.4g}".replace("-", MINUS) + behind
-    telling = [one for one in value if 0.02 < one < 1.98] or list(value)
+    telling = [one for one in value if 0.02 < one < 1.98]
+    if not telling:
+        return "all within 0.02 of 0 or 2"
     shown = ", ".join(f"{one:.2f}" for one in telling[:4])
     more = " \u2026" if len(telling) > 4 else ""
     return f"{shown}{more}{behind}"

@@ -63,9 +63,9 @@ class WatchPage(QWidget):
         self._clock.timeout.connect(self.refresh)
         for signal in (desk.brief_changed, desk.plan_changed, desk.run_changed):
             signal.connect(self._moved)
-        self._moved()
         self._clerk = Clerk("plumbrule-plots", self)
-        self._clerk.do(_import_plots, lambda _: self._prepare())
+        self._plots_asked = False
+        self._moved()
 
     def _prepare(self) -> None:
         """Do now what would hold up the window when the page is first shown during a run."""
@@ -127,6 +127,9 @@ class WatchPage(QWidget):
             self._shown_id = desk.brief_id
             self._watch.forget()
         self._watch.follow(desk.state, self._running, time.monotonic())
+        if desk.plan is not None and not self._plots_asked:
+            self._plots_asked = True
+            self._clerk.do(_import_plots, lambda _: self._prepare())
         if self._running and not self._clock.isActive():
             self._clock.start()
         elif not self._running:

@@ -26,9 +26,9 @@ class Pace(QObject):
         self._again()
 
     def eventFilter(self, watched: QObject, event: QEvent) -> bool:
-        """Catch up when the widget comes into sight."""
+        """Catch up when the widget comes into sight, before it is painted."""
         if event.type() == QEvent.Type.Show and watched is self._widget:
-            QTimer.singleShot(0, self, self._again)
+            self._again()
         return False
 
     def _again(self) -> None:

@@ -119,7 +119,7 @@ def test_a_reading_stands_beside_the_limit_and_the_finding_that_used_it(made: Si
 
 def test_occupations_show_those_that_say_something():
     assert value_words((2.0, 1.99, 1.93, 0.07, 0.001), "electrons") == "1.93, 0.07 electrons"
-    assert value_words((2.0, 2.0)) == "2.00, 2.00"
+    assert value_words((2.0, 1.99, 0.01), "electrons") == "all within 0.02 of 0 or 2"
     assert value_words(True) == "yes"
     assert reading_name("share_of_something_new") == "share of something new"
 

@@ -44,9 +44,7 @@ def main() -> int:
     p50, p99 = np.percentile(times, [50, 99])
     worst = sorted(ear.lags, reverse=True)[:5]
     print(f"{len(times)} events: p50 {p50:.1f} ms, p99 {p99:.1f} ms, longest {times.max():.1f} ms")
-    print(
-        f"the window's own work between two events: p99 {np.percentile(own, 99):.1f} ms, longest {own.max():.1f} ms"
-    )
+    print(f"own work between two events: p99 {np.percentile(own, 99):.1f} ms, longest {own.max():.1f} ms")
     print("longest:", "; ".join(f"{lag * 1000:.0f} ms ({where})" for lag, where in worst))
     return int(p99 > asked.limit)
 
@@ -60,7 +58,7 @@ class Beat(QEvent):
 
 
 class Ear(QObject):
-    """Hears the beats: keeps each lag with what the window was doing, and the CPU time of its thread since the last.
+    """Hears the beats: keeps each lag with what the window was doing, and its CPU time since the last.
 
     The lag holds what a busy machine adds; the CPU time is the window's own doing.
     """

@@ -16,6 +16,9 @@ class SpaceRequest(Document):
     electrons: Annotated[int, Field(ge=1, le=100)] | None = None
     orbitals: tuple[OrbitalNumber, ...] | None = None
     count: Annotated[int, Field(ge=1, le=100)] | None = None
+    orbital_set: Literal["auto", "canonical", "valence"] = "auto"
+    """Which orbitals are numbered: canonical Hartree-Fock ones, or such with the valence virtual ones first.
+    auto: canonical where the space is set, valence where it is proposed."""
     solver: Literal["auto", "exact", "DMRG"] = "auto"
     bond_dimension: int = 500
     grow: bool = True
@@ -24,7 +27,10 @@ class SpaceRequest(Document):
 
 
 class Space(Document):
-    """A chosen active space: orbitals of the reference numbered from 1, in the order of their energies."""
+    """A chosen active space: orbitals numbered from 1, occupied ones first, each block by its energies.
+
+    No electrons and no orbitals where one determinant describes the molecule.
+    """
 
     electrons: Annotated[int, Field(ge=0)]
     orbitals: tuple[OrbitalNumber, ...]

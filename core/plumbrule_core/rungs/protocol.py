@@ -10,7 +10,8 @@ from plumbrule_core.correlation.protocol import Solved
 from plumbrule_core.documents.active_space import GrowthPoint, Space
 from plumbrule_core.documents.plan import Forecast, Machine, TaskSpec
 
-Kind = Literal["wave function", "density functional"]
+Kind = Literal["wave function", "density functional", "detection"]
+"""A detection looks for strong correlation: its energy, of a few orbitals only, is compared with no other."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -102,8 +103,13 @@ class Bench:
     coupled_cluster: Any = None
     triples: float | None = None
     """The (T) correction in hartree."""
+    orbitals: Any = None
+    """The orbitals (functions, orbitals) that `space` and `growth_spaces` number from 1, shared by both spins;
+    the reference determinant fills the first alpha and the first beta ones. Left by the rung "Active space"
+    (`correlation.window`): canonical Hartree-Fock orbitals, or such with the valence virtual ones first. The
+    Fock matrix is diagonal only within their blocks, so (T) turns amplitudes to canonical orbitals before."""
     space: Space | None = None
-    """The chosen active space, in the orbitals of the reference; left by the rung "Active space"."""
+    """The chosen active space, in `orbitals`; left by the rung "Active space"."""
     solved: Solved | None = None
     """The wave function of `space`."""
     growth_spaces: tuple[Space, ...] = ()

@@ -18,7 +18,7 @@ from plumbrule_core.rungs.published_systems import (
 )
 
 
-class CCSDT:
+class PerturbativeTriples:
     """The usual best answer for one-determinant molecules; refused where CCSD did not converge."""
 
     name = "CCSD(T)"

@@ -50,7 +50,10 @@ class Mode:
 
 
 def follow(mean_field: Any, watch: Watch | None) -> tuple[bool, tuple[str, ...]]:
-    """Follow internal instabilities down; returns whether the end is stable, and what happened in words."""
+    """Follow internal instabilities down; returns whether the end is stable, and what happened in words.
+
+    A direction along which the energy stays the same is no instability.
+    """
     notes: list[str] = []
     for _ in range(MOST_FOLLOWED):
         mode = internal_mode(mean_field)
@@ -62,9 +65,11 @@ def follow(mean_field: Any, watch: Watch | None) -> tuple[bool, tuple[str, ...]]
         descend(mean_field, watch, orbitals=_moved(mean_field, mode.direction))
         gain = before["e_tot"] - mean_field.e_tot
         if gain < LOWER or not mean_field.converged:
+            flat = bool(mean_field.converged and abs(gain) < LOWER)
             _put_back(mean_field, before)
-            notes.append("an instability of the solution could not be followed to a lower one")
-            return gain < LOWER, tuple(notes)
+            if not flat:
+                notes.append("an instability of the solution could not be followed to a lower one")
+            return flat, tuple(notes)
         notes.append(
             f"the first solution was not a minimum; followed to one {gain * KJ_PER_HARTREE:.2f} kJ/mol lower "
             f"({gain:.6f} hartree)"

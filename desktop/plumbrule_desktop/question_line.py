@@ -204,8 +204,9 @@ class QuestionLine(QFrame):
         """Show the forecast, what is wrong with the question, and what the button does now."""
         desk = self._desk
         plan, faults = desk.plan, desk.faults
-        asked = [fault.says for fault in faults if fault.where.startswith("question")]
-        shown = asked if desk.brief.question is not None else []
+        ordered = sorted(faults, key=lambda fault: not fault.where.startswith("question"))
+        unasked = desk.brief.question is None
+        shown = [fault.says for fault in ordered if not (unasked and fault.where == "question")]
         self.trouble.setText(shown[0][:1].upper() + shown[0][1:] + "." if shown else "")
         self.trouble.setToolTip("\n".join(shown))
         self.trouble.setVisible(bool(shown))

@@ -212,6 +212,7 @@ def test_the_recipe_is_changed_in_plain_words_and_its_faults_stand_at_its_fields
     settled(qtbot, window)
     assert recipe.fields["basis"].fault.isVisible()
     assert "no-such-basis" in recipe.fields["basis"].fault.text()
+    assert "no-such-basis" in window.question_line.trouble.text()
 
 
 def test_a_run_goes_from_the_button_to_a_verdict_on_the_plumb_line(
@@ -227,6 +228,8 @@ def test_a_run_goes_from_the_button_to_a_verdict_on_the_plumb_line(
     qtbot.mouseClick(button, Qt.MouseButton.LeftButton)
     assert button.text() == "Stop"
     qtbot.waitUntil(lambda: not window.desk.running, timeout=LONG)
+    settled(qtbot, window)
+    assert window.banner.texts == ("The run is done.",)
     qtbot.waitUntil(lambda: bool(window.plumb_line.answer.text()), timeout=LONG)
     assert button.text() == "Run"
     assert window.question_line.forecast.text() == "all answered"

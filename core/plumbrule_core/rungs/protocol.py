@@ -117,6 +117,8 @@ class Bench:
     where growth is not asked."""
     tailored: tuple[Any, ...] = ()
     """The tailored solutions (`correlation.tailored.Tailored`), one a size, left by TCCSD for (T)."""
+    tailored_bench: "Bench | None" = None
+    """A bench of its own for the determinant of `orbitals`, where that is not the reference's."""
     outcomes: dict[str, Outcome] = field(default_factory=dict)
 
 

@@ -20,7 +20,7 @@ def correlated_reference(bench: Bench) -> Any:
         raise PlumbruleError("Hartree-Fock has not been computed, and this method starts from it")
     if bench.correlated_reference is None:
         field = bench.mean_field
-        bench.correlated_reference = _semicanonical(field, bench.frozen) if field.istype("ROHF") else field
+        bench.correlated_reference = semicanonical(field, bench.frozen) if field.istype("ROHF") else field
     return bench.correlated_reference
 
 
@@ -82,7 +82,8 @@ def fitting_of(given: Given) -> Any:
     return fitting
 
 
-def _semicanonical(field: Any, frozen: int) -> Any:
+def semicanonical(field: Any, frozen: int) -> Any:
+    """The same determinant as an unrestricted field, its Fock matrices diagonal within each block."""
     unrestricted = field.to_uhf()
     focks = np.asarray(unrestricted.get_fock())
     orbitals, energies = np.array(unrestricted.mo_coeff), np.zeros_like(unrestricted.mo_occ)

@@ -15,7 +15,8 @@ class Problem:
 
     `one` is (n, n) and `two` (n, n, n, n) in chemists' order for orbitals shared by both spins; for
     spin-unrestricted orbitals `one` is (2, n, n) [alpha, beta] and `two` (3, n, n, n, n) [aa, ab, bb].
-    The reference determinant fills the first `alpha` and the first `beta` orbitals.
+    The reference determinant fills the first `alpha` and the first `beta` orbitals. `overlap` (n, n), alpha
+    by beta, is what the spin in spin-unrestricted orbitals is read with; without it that spin is NaN.
     """
 
     one: Array
@@ -24,6 +25,7 @@ class Problem:
     beta: int
     multiplicity: int
     core_energy: float = 0.0
+    overlap: Array | None = None
 
     @property
     def size(self) -> int:
@@ -58,6 +60,8 @@ class Solved:
     `densities` (2, n, n): alpha and beta one-body density matrices. `entropies` (n,) in [0, ln 4].
     `mutual_information` (n, n): I = s_i + s_j - s_ij, symmetric, zero diagonal, no factor 1/2.
     `leading`: the heaviest determinants as (weight, alpha occupations, beta occupations).
+    `extrapolated`: the energy (hartree) carried to the solver's limit where it can tell, else None; and how
+    far that may be off.
     """
 
     energy: float
@@ -69,6 +73,8 @@ class Solved:
     spin_squared: float
     leading: tuple[tuple[float, tuple[int, ...], tuple[int, ...]], ...] = ()
     notes: tuple[str, ...] = ()
+    extrapolated: float | None = None
+    extrapolation_error: float | None = None
 
     @property
     def reference_weight(self) -> float:

@@ -7,7 +7,7 @@ from typing import Any, Literal, Protocol
 import numpy as np
 
 from plumbrule_core.correlation.protocol import Solved
-from plumbrule_core.documents.active_space import GrowthPoint, Space
+from plumbrule_core.documents.active_space import GrowthPoint, Space, SpaceRequest
 from plumbrule_core.documents.plan import Forecast, Machine, TaskSpec
 
 Kind = Literal["wave function", "density functional", "detection"]
@@ -26,6 +26,8 @@ class Size:
     frozen: int = 0
     unrestricted: bool = False
     density_fitting: bool = False
+    active: tuple[int, int, int] | None = None
+    """Active orbitals, alpha and beta electrons, where the user set the space; None where it is yet to be found."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -47,6 +49,8 @@ class Published:
     core: Literal["frozen", "all"] = "all"
     cartesian: bool = False
     slow: bool = False
+    space: SpaceRequest | None = None
+    """The active space that the value was published for."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -103,6 +107,10 @@ class Bench:
     coupled_cluster: Any = None
     triples: float | None = None
     """The (T) correction in hartree."""
+    full_triples: Any = None
+    """The CCSDT object, with its amplitudes."""
+    optimised: Any = None
+    """The CASSCF object, with its orbitals and vector."""
     orbitals: Any = None
     """The orbitals (functions, orbitals) that `space` and `growth_spaces` number from 1, shared by both spins;
     the reference determinant fills the first alpha and the first beta ones. Left by the rung "Active space"

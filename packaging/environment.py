@@ -96,13 +96,13 @@ class Environment:
         waiting = [lock for lock in locks if not whole or not self._is_stamped(lock)]
         if not waiting:
             return
-        say(f"Setting up {self.folder}: a few minutes and about 2 GB, only now and when packages change ...")
+        say(f"Setting up {self.folder}: a few minutes and about 3 GB, only now and when packages change ...")
         if not whole:
             self._make()
         for lock in waiting:
             self._install("-r", str(self.root / lock))
         if LOCK in waiting:
-            self._install("--no-deps", "-e", str(self.root))
+            self._install("--no-deps", "--no-build-isolation", "-e", str(self.root))
         for lock in waiting:
             self._stamp(lock).write_text(self._digest(lock), encoding="utf-8")
 
@@ -135,7 +135,7 @@ class Environment:
         if self._run([*pip, *what]) != 0:
             raise Problem(
                 "The needed packages could not be installed; the lines above say why. Setting up needs the "
-                "network and about 2 GB of disk. Start again when both are there."
+                "network and about 3 GB of disk. Start again when both are there."
             )
 
 

@@ -20,6 +20,8 @@ WANTED = {
     "lock.txt": [
         *PROJECT["project"]["dependencies"],
         *PROJECT["project"]["optional-dependencies"]["desktop"],
+        *PROJECT["project"]["optional-dependencies"]["dmrg"],
+        *PROJECT["build-system"]["requires"],
     ],
     "lock-test.txt": PROJECT["dependency-groups"]["test"],
 }

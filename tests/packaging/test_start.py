@@ -64,7 +64,7 @@ def test_the_first_start_makes_the_environment_and_the_second_does_nothing(
     prepare(LOCKS[0])
     made, *installed = machine.installed()
     assert made == f"{sys.executable} -m venv --clear .venv"
-    assert installed == ["-r packaging/lock.txt", "--no-deps -e ."]
+    assert installed == ["-r packaging/lock.txt", "--no-deps --no-build-isolation -e ."]
     prepare(LOCKS[0])
     assert machine.installed() == []
 
@@ -91,7 +91,7 @@ def test_a_changed_lock_or_project_is_installed_again(
     with (machine.root / changed).open("a") as file:
         file.write("# changed\n")
     prepare(LOCKS[0])
-    assert machine.installed() == ["-r packaging/lock.txt", "--no-deps -e ."]
+    assert machine.installed() == ["-r packaging/lock.txt", "--no-deps --no-build-isolation -e ."]
 
 
 @needs_posix
@@ -105,7 +105,7 @@ def test_what_was_interrupted_is_said_and_done_again(
     machine.fails = "\0"
     machine.installed()
     prepare(LOCKS[0])
-    assert machine.installed()[-2:] == ["-r packaging/lock.txt", "--no-deps -e ."]
+    assert machine.installed()[-2:] == ["-r packaging/lock.txt", "--no-deps --no-build-isolation -e ."]
 
 
 @needs_posix
@@ -118,7 +118,11 @@ def test_an_environment_that_is_not_of_this_folder_is_made_anew(
     prepare(*LOCKS)
     made, *installed = machine.installed()
     assert "--clear" in made
-    assert installed == ["-r packaging/lock.txt", "-r packaging/lock-test.txt", "--no-deps -e ."]
+    assert installed == [
+        "-r packaging/lock.txt",
+        "-r packaging/lock-test.txt",
+        "--no-deps --no-build-isolation -e .",
+    ]
 
 
 def test_a_python_that_is_too_old_is_told_so(environment: ModuleType) -> None:

@@ -4,7 +4,7 @@ import logging
 import queue
 import threading
 import time
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from functools import partial
 from itertools import count, groupby
 from pathlib import Path
@@ -126,6 +126,11 @@ class Run:
             self.stop()
 
 
+LEAST_MEMORY_MB = 2000.0
+ROOM = 2.0
+"""A forecast may be short by this factor before the library turns to the disk."""
+
+
 def run_plan(
     plan: Plan,
     known: Mapping[str, Result],
@@ -139,8 +144,8 @@ def run_plan(
     """Start every task of a plan that is not answered in `known` (by task id).
 
     First every known result is told again as reused; then chain after chain runs in a worker of its own
-    with so many threads and MB. A chain that fails or dies stops no other. Checkpoints and arrays go
-    to `cache`.
+    with so many threads, and the memory that its forecast asks for, within `memory_mb`. A chain that fails
+    or dies stops no other. Checkpoints and arrays go to `cache`.
     """
     cache = cache.absolute()
     orders = tuple(
@@ -148,7 +153,7 @@ def run_plan(
             tasks=chain,
             known=tuple(task.id for task in chain if task.id in known),
             threads=threads,
-            memory_mb=memory_mb,
+            memory_mb=_memory_for(chain, memory_mb),
             shelf=str(shelf_folder(cache)),
             blobs=str(blob_folder(cache)),
         )
@@ -158,6 +163,11 @@ def run_plan(
     reused = tuple(known[task.id] for task in plan.tasks if task.id in known)
     tidy = partial(prune, cache, time.time(), keep=[task.id for task in plan.tasks])
     return Run(orders, reused, executor, on_event, tidy)
+
+
+def _memory_for(chain: Iterable[Task], limit: float) -> float:
+    """What a chain may use, in MB: the forecast of its largest task with room to spare, within the limit."""
+    return min(limit, max(LEAST_MEMORY_MB, ROOM * max(task.forecast.memory_mb for task in chain)))
 
 
 def _chains(plan: Plan) -> Iterator[tuple[Task, ...]]:

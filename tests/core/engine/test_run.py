@@ -2,6 +2,7 @@
 
 import threading
 import time
+from typing import ClassVar
 
 import pytest
 
@@ -174,3 +175,21 @@ def test_a_run_that_is_not_over_says_so_at_wait(task, heard, start):
     assert run.outcome is None
     run.stop()
     assert run.wait(2)
+
+
+def test_a_chain_gets_the_memory_of_its_forecast_with_room_within_the_limit(task, fake, tmp_path):
+    class Noting:
+        orders: ClassVar = []
+
+        def submit(self, order, on_event, on_end=None):
+            self.orders.append(order)
+            return fake.submit(order, on_event, on_end)
+
+    large = task("quick")
+    large = large.model_copy(update={"forecast": large.forecast.model_copy(update={"memory_mb": 3000.0})})
+    for limit, given in ((24000.0, 6000.0), (4000.0, 4000.0)):
+        run = run_plan(
+            Plan(tasks=(large,)), {}, Noting(), lambda e: None, threads=1, memory_mb=limit, cache=tmp_path
+        )
+        assert run.wait(30)
+        assert Noting.orders[-1].memory_mb == given

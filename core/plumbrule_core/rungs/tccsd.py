@@ -10,6 +10,7 @@ from plumbrule_core.errors import PlumbruleError
 from plumbrule_core.rungs.correlated.reference import NO_PAIRS, correlated_used, has_pairs, reference_name
 from plumbrule_core.rungs.correlated.tailored_frame import frame_of
 from plumbrule_core.rungs.correlated.tailored_series import Series
+from plumbrule_core.rungs.correlated.tailored_values import tailored_value
 from plumbrule_core.rungs.costs import iterated_forecast
 from plumbrule_core.rungs.protocol import Bench, Given, Kind, Outcome, Published, Size, Tell
 
@@ -30,10 +31,16 @@ class TCCSD:
     says = "CCSD with its strongly correlated part solved exactly: for stretched bonds and diradicals."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space")
-    rank = 3
+    rank = 28
     single_reference = False
     citation = "T. Kinoshita, O. Hino and R. J. Bartlett, J. Chem. Phys. 123, 074106 (2005)"
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        tailored_value("T02", -14.4197890821),
+        tailored_value("T09", -109.2741922),
+        tailored_value("T11", -76.238261521),
+        tailored_value("T12", -75.9473359),
+        tailored_value("T13", -100.2072094005),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """Transformation and the iterations of a whole series, whose later sizes start warm."""

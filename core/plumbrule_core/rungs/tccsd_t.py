@@ -10,6 +10,7 @@ from plumbrule_core.errors import PlumbruleError
 from plumbrule_core.rungs.correlated.reference import NO_PAIRS, correlated_used, has_pairs, reference_name
 from plumbrule_core.rungs.correlated.solvers import coupled_cluster, integrals
 from plumbrule_core.rungs.correlated.tailored_frame import frame_of
+from plumbrule_core.rungs.correlated.tailored_values import tailored_value
 from plumbrule_core.rungs.costs import triples_forecast
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
 from plumbrule_core.rungs.tccsd import SIZES_FORECAST, growth, size_taken, space_used
@@ -25,10 +26,15 @@ class TCCSDT:
     says = "TCCSD with triples outside the active space: the best answer where one determinant fails."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space", "TCCSD")
-    rank = 4
+    rank = 38
     single_reference = False
     citation = "D. I. Lyakh, V. F. Lotrich and R. J. Bartlett, Chem. Phys. Lett. 501, 166 (2011)"
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        tailored_value("T02", -14.4197890821),
+        tailored_value("T09", -109.280542),
+        tailored_value("T11", -76.238261521 - 0.002914227),
+        tailored_value("T12", -75.9473359 - 0.003244343),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """The triples at every size of the series, which cost the same at each."""

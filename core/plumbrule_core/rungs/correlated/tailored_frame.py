@@ -120,6 +120,8 @@ def _bench_of_its_own(bench: Bench, numbered: np.ndarray) -> Bench:
     unrestricted = is_unrestricted(field)
     field.mo_coeff = np.array(numbered) if unrestricted else np.array(numbered[0])
     field.mo_occ = occupations if unrestricted else occupations.sum(axis=0)
+    # Without this the library would take over the energy of the determinant that the field converged to.
+    field.e_tot = field.energy_tot()
     open_shell = unrestricted or field.istype("ROHF")
     return Bench(
         molecule=bench.molecule,

@@ -12,8 +12,8 @@ import numpy as np
 
 from plumbrule_core.correlation.amplitudes import SHAKY_WEIGHT, cluster_amplitudes
 from plumbrule_core.correlation.integrals import problem_from
-from plumbrule_core.correlation.protocol import Array, Problem, Solved, Solver
-from plumbrule_core.correlation.solvers import SOLVERS
+from plumbrule_core.correlation.protocol import Array, Problem, Solved
+from plumbrule_core.correlation.solvers import choose
 from plumbrule_core.correlation.tailored import Tailored, hold
 from plumbrule_core.documents.active_space import Space
 from plumbrule_core.errors import PlumbruleError
@@ -43,15 +43,20 @@ class Series:
     notes: list[str]
 
     def follow(self, spaces: Sequence[Space]) -> tuple[Tailored, ...]:
-        """Every size; raises PlumbruleError where the chosen one cannot be tailored, and Stopped."""
+        """Every size that can be solved; raises PlumbruleError where the chosen one cannot, and Stopped."""
         stored = self.given.shelf.load()
         known = {size.space.orbitals: size for size in finished_sizes(stored, self.frame)}
         for space in spaces:
-            size = known.get(space.orbitals)
-            size = self._tailored(space, stored) if size is None else replace(size, space=space)
+            try:
+                size = known.get(space.orbitals) or self._tailored(space, stored)
+            except PlumbruleError as error:
+                if space == self.chosen:
+                    raise
+                self.notes.append(f"the space {space.label} was left out: {error}")
+                continue
             if size.note:
                 self.notes.append(size.note)
-            self.finished.append(size)
+            self.finished.append(replace(size, space=space))
         return tuple(self.finished)
 
     def _tailored(self, space: Space, stored: Any) -> Tailored:
@@ -139,7 +144,7 @@ class Series:
             named = f"active space {space.label}, orbitals {', '.join(map(str, sorted(space.orbitals)))}"
             if space == self.chosen:
                 raise PlumbruleError(f"{self.given.spec.species.name}, {named}: {error}") from error
-            targets, note = (), f"no TCCSD in the larger or smaller {named}: {error}"
+            targets, note = (), f"no TCCSD in the {named}: {error}"
         return ActiveState(
             energy=solved.energy,
             c0_squared=solved.reference_weight,
@@ -165,7 +170,8 @@ class Series:
             return bench.solved
         problem = _problem(self.frame, space)
         self.tell.note(f"solving the active space {space.label}")
-        return _solver(self.given, problem).solve(
+        asked = "auto" if self.given.spec.space is None else self.given.spec.space.solver
+        return choose(asked, problem, self.given.memory_mb).solve(
             problem,
             Staged(self.tell, f"active space {space.label}"),
             threads=self.given.threads,
@@ -189,21 +195,6 @@ def _problem(frame: Frame, space: Space) -> Problem:
         given.spec.species.multiplicity,
         fitting_of(given) if given.spec.settings.density_fitting else None,
     )
-
-
-def _solver(given: Given, problem: Problem) -> Solver:
-    """The solver that was asked for, or the first one that can; raises PlumbruleError."""
-    wanted = "auto" if given.spec.space is None else given.spec.space.solver
-    reasons = []
-    for name, solver in SOLVERS.items():
-        if wanted not in ("auto", name):
-            continue
-        reason = solver.missing() or solver.reach(problem, given.memory_mb)
-        if not reason:
-            return solver
-        reasons.append(reason)
-    said = "; ".join(reasons) or f"this program has no solver {wanted}"
-    raise PlumbruleError(f"the active space cannot be solved: {said}. Choose a smaller active space")
 
 
 def _caution(space: Space, solved: Solved) -> str:

@@ -26,7 +26,7 @@ class CCSD:
     says = "Pairs of electrons correlated to infinite order: the ground on which (T) stands."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF",)
-    rank = 3
+    rank = 30
     single_reference = True
     citation = "G. D. Purvis and R. J. Bartlett, J. Chem. Phys. 76, 1910 (1982)"
     published: tuple[Published, ...] = (

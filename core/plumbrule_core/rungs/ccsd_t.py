@@ -25,7 +25,7 @@ class PerturbativeTriples:
     says = "The usual best answer, as long as one determinant describes the molecule."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "CCSD")
-    rank = 4
+    rank = 40
     single_reference = True
     citation = (
         "K. Raghavachari, G. W. Trucks, J. A. Pople and M. Head-Gordon, Chem. Phys. Lett. 157, 479 (1989)"

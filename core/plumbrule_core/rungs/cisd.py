@@ -25,7 +25,7 @@ class CISD:
     says = "Shows how much weight the reference keeps; its energies do not add up for separate molecules."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF",)
-    rank = 2
+    rank = 20
     single_reference = True
     citation = "J. A. Pople, R. Seeger and R. Krishnan, Int. J. Quantum Chem. Symp. 11, 149 (1977)"
     published: tuple[Published, ...] = (

@@ -33,7 +33,7 @@ class MP2:
     says = "Pairs of electrons correlated to second order: cheap, and too eager where orbitals lie close."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF",)
-    rank = 1
+    rank = 10
     single_reference = True
     citation = "C. Moller and M. S. Plesset, Phys. Rev. 46, 618 (1934)"
     published: tuple[Published, ...] = (

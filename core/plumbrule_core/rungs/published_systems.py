@@ -3,7 +3,7 @@
 `check` names the entry in the collection of check values that came with the specification.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
 from plumbrule_core.rungs.protocol import Published
@@ -44,6 +44,10 @@ class System:
             cartesian=self.cartesian,
             slow=self.slow,
         )
+
+    def slowly(self) -> "System":
+        """The same, for a test that takes long."""
+        return replace(self, slow=True)
 
 
 def from_bohr(atoms: str) -> str:
@@ -103,12 +107,47 @@ BORANE_CATION = System(
     multiplicity=2,
     core="frozen",
 )
+NITROGEN_FROZEN = System(
+    xyz="N 0 0 0\nN 0 0 1.1",
+    basis="cc-pVDZ",
+    source="reference value in the library's own source, PySCF 2.14.0",
+    check="",
+    atol=1e-7,
+    core="frozen",
+)
 HELIUMS = System(
     xyz="He 0 0 0\nHe 0 0 100\nHe 0 100 0",
     basis="cc-pVDZ",
     source="size extensivity: three far atoms against one, PySCF 2.14.0 for the atom",
     check="A06",
     atol=1e-7,
+)
+AMIDOGEN_SMALL = System(
+    xyz="N 0 0 0\nH 1.013 0 0\nH -0.2313190064 0 0.9862358985",
+    basis="6-31G",
+    source=OWN,
+    check="F12",
+    atol=1e-6,
+    multiplicity=2,
+    core="frozen",
+)
+HELIUMS_TWO = System(xyz=from_bohr("He 0 0 -5; He 0 0 5"), basis="6-31G", source=OWN, check="F13", atol=1e-8)
+WATER_SMALL = System(
+    xyz=from_bohr("O 0 0 -0.0742719254; H 0 1.4949589982 -1.0728640373; H 0 -1.4949589982 -1.0728640373"),
+    basis="6-31G",
+    source=OWN,
+    check="F10",
+    atol=1e-6,
+    slow=True,
+)
+BORON_HYDRIDE = System(
+    xyz="B 0 0 0\nH 0 0 1.25386",
+    basis="aug-cc-pVDZ",
+    source="M. L. Leininger et al., J. Chem. Phys. 112, 9213 (2000) for the system; own value, PySCF 2.14.0",
+    check="F24",
+    atol=2e-6,
+    core="frozen",
+    slow=True,
 )
 WATER_SIX_D = System(
     xyz=from_bohr("O 0 0 0; H 0 1.43055071 1.10725140; H 0 -1.43055071 1.10725140"),

@@ -1,1 +1,1 @@
-"""What the rungs of an active space share: its division, exact diagonalisation, optimised orbitals, prices."""
+"""What the rungs of an active space share: its division, its states, optimised orbitals, prices."""

@@ -1,15 +1,15 @@
-"""How many determinants a space has, and whether this machine can hold them; said in words before the start."""
+"""How many determinants a space has, and whether this machine can hold them; said before the start."""
 
 from math import comb, log10
 
 from plumbrule_core.errors import PlumbruleError
 
-VECTORS = 26
-"""Vectors of the length of the wave function that the diagonalisation keeps at once."""
-KEPT = 8
-"""Trial vectors of the diagonalisation; with their products and work space they make VECTORS."""
+VECTORS = 36
+"""Vectors of the length of the wave function that the exact solver holds at once (`correlation.solvers`)."""
 TABLE_BYTES = 16
 """A link between two strings in the library's tables: four small integers."""
+STATES, CHEAP = 3, 1e9
+"""States followed at once where a product with the Hamiltonian takes no more than CHEAP operations."""
 WORDS = ((9, "thousand million"), (6, "million"), (3, "thousand"))
 
 
@@ -38,9 +38,14 @@ def exact_memory_mb(orbitals: int, alpha: int, beta: int) -> float:
 
 
 def exact_operations(orbitals: int, alpha: int, beta: int) -> float:
-    """Operations of one product of the Hamiltonian with a vector: every pair of replacements, as a product."""
+    """Operations of one product of the Hamiltonian with a vector: every pair of replacements."""
     pairs = orbitals * (orbitals + 1) // 2
     return _float(determinants(orbitals, alpha, beta) * (2 * pairs * pairs + 20 * pairs))
+
+
+def states_followed(orbitals: int, alpha: int, beta: int) -> int:
+    """States followed at once: several where that is cheap, lest one of another symmetry is missed."""
+    return STATES if exact_operations(orbitals, alpha, beta) <= CHEAP else 1
 
 
 def refuse_beyond(orbitals: int, alpha: int, beta: int, memory_mb: float, what: str, instead: str) -> None:

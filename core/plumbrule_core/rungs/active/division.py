@@ -1,30 +1,26 @@
-"""How an active space divides the orbitals: inactive, active, virtual; checked in words before anything runs."""
+"""How an active space divides the orbitals: inactive, active, virtual; checked before anything runs."""
 
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
+from plumbrule_core.correlation.integrals import problem_from
+from plumbrule_core.correlation.protocol import Problem
 from plumbrule_core.documents.active_space import Space
-from plumbrule_core.documents.species import spin_words
 from plumbrule_core.errors import PlumbruleError
-from plumbrule_core.rungs.active.shared_orbitals import SharedOrbitals, shared_orbitals
-from plumbrule_core.rungs.protocol import Given
-
-HALF_FILLED = 0.5
-"""An inactive orbital must hold two electrons, within this much (as UHF natural orbitals may)."""
+from plumbrule_core.rungs.protocol import Bench, Given
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Division:
-    """`coefficients` (functions, orbitals): first the inactive, then the active, then the virtual orbitals."""
+    """`coefficients` (functions, orbitals): inactive orbitals first, then active, then virtual ones."""
 
     space: Space
     coefficients: np.ndarray
     inactive: int
     electrons: tuple[int, int]
-    """Active electrons of the two spins, the majority first."""
-    words: str
-    """Which orbitals these are."""
+    """Active electrons of the two spins, alpha first."""
 
     @property
     def active(self) -> int:
@@ -32,72 +28,84 @@ class Division:
         return len(self.space.orbitals)
 
     @property
-    def active_block(self) -> slice:
+    def virtual(self) -> int:
+        """The number of virtual orbitals."""
+        return int(self.coefficients.shape[1]) - self.inactive - self.active
+
+    @property
+    def block(self) -> slice:
         """The columns of the active orbitals."""
         return slice(self.inactive, self.inactive + self.active)
 
+    @property
+    def used(self) -> dict[str, str]:
+        """The space as the report names it."""
+        numbers = ", ".join(map(str, self.space.orbitals)) or "none"
+        return {"active space": f"{self.space.label}, orbitals {numbers}"}
+
 
 def division_of(given: Given) -> Division:
-    """The orbitals of the reference divided by the space on the bench; raises PlumbruleError."""
-    space = given.bench.space
-    if space is None:
-        raise PlumbruleError("no active space has been chosen, and this method works in one")
-    orbitals = shared_orbitals(given.bench)
-    electrons = active_electrons(space, given.spec.species.unpaired, given.spec.species.name)
-    chosen = [number - 1 for number in space.orbitals]
-    _check_numbers(chosen, orbitals, space)
-    rest = [k for k in range(len(orbitals.occupations)) if k not in set(chosen)]
-    inactive = _inactive(rest, orbitals, given.bench.molecule.nelectron - space.electrons, space)
-    order = [*inactive, *sorted(chosen), *(k for k in rest if k not in set(inactive))]
+    """The orbitals on the bench, divided by the space on the bench; raises PlumbruleError.
+
+    Where one determinant describes the molecule the space is empty; single electrons are active even then.
+    """
+    bench, name = given.bench, given.spec.species.name
+    if bench.mean_field is None or bench.orbitals is None or bench.space is None:
+        raise PlumbruleError(f"no active space has been chosen for {name}, and this method works in one")
+    alpha, beta = (int(count) for count in bench.mean_field.mol.nelec)
+    space, coefficients = _with_single_electrons(bench.space, alpha, beta), np.asarray(bench.orbitals)
+    _check(space, coefficients.shape[1], alpha, beta, name)
+    chosen = [number - 1 for number in sorted(space.orbitals)]
+    inactive = [k for k in range(beta) if k not in chosen]
+    rest = [k for k in range(coefficients.shape[1]) if k not in chosen and k not in inactive]
     return Division(
         space=space,
-        coefficients=orbitals.coefficients[:, order],
+        coefficients=coefficients[:, [*inactive, *chosen, *rest]],
         inactive=len(inactive),
-        electrons=electrons,
-        words=orbitals.words,
+        electrons=(alpha - len(inactive), beta - len(inactive)),
     )
 
 
-def active_electrons(space: Space, unpaired: int, name: str) -> tuple[int, int]:
-    """Alpha and beta electrons of the space; raises PlumbruleError where the spin state does not fit."""
-    alpha, left_over = divmod(space.electrons + unpaired, 2)
-    beta, size = space.electrons - alpha, len(space.orbitals)
-    if left_over:
-        raise PlumbruleError(
-            f"{space.electrons} active electrons cannot make {name} a {spin_words(unpaired + 1)}: choose one "
-            "electron more or fewer"
-        )
-    if beta < 0 or alpha > size:
-        raise PlumbruleError(
-            f"the space {space.label} is too small to make {name} a {spin_words(unpaired + 1)}: choose at least "
-            f"{max(unpaired, 1)} electrons and {max(unpaired, alpha)} orbitals"
-        )
-    return alpha, beta
+def problem_of(division: Division, given: Given, coefficients: np.ndarray | None = None) -> Problem:
+    """The Hamiltonian of the active electrons in these orbitals, in the field of the inactive ones."""
+    block = division.block
+    return problem_from(
+        given.bench.mean_field,
+        division.coefficients if coefficients is None else coefficients,
+        range(division.inactive),
+        range(block.start, block.stop),
+        given.spec.species.multiplicity,
+    )
 
 
-def _check_numbers(chosen: list[int], orbitals: SharedOrbitals, space: Space) -> None:
-    count = len(orbitals.occupations)
-    beyond = [k + 1 for k in chosen if k >= count]
-    if beyond or len(set(chosen)) < len(chosen):
-        what = f"orbital {beyond[0]}, but there are {count}" if beyond else "one orbital twice"
-        raise PlumbruleError(f"the active space {space.label} names {what}; number them from 1 to {count}")
+def restricted_field(bench: Bench) -> Any:
+    """A restricted mean field for the library's integrals; its own orbitals are not meant to be used."""
+    field = bench.mean_field
+    return field.to_rhf() if field.istype("UHF") else field
 
 
-def _inactive(rest: list[int], orbitals: SharedOrbitals, electrons: int, space: Space) -> list[int]:
-    pairs, left_over = divmod(electrons, 2)
-    if electrons < 0 or left_over:
+def determinant_energy(division: Division, given: Given) -> float:
+    """The energy in hartree of the closed shell that is left where no orbital is active."""
+    field, filled = restricted_field(given.bench), division.coefficients[:, : division.inactive]
+    return float(field.energy_tot(dm=2 * filled @ filled.T))
+
+
+def _with_single_electrons(space: Space, alpha: int, beta: int) -> Space:
+    if space.orbitals or alpha == beta:
+        return space
+    return Space(electrons=alpha - beta, orbitals=tuple(range(beta + 1, alpha + 1)), why=space.why)
+
+
+def _check(space: Space, count: int, alpha: int, beta: int, name: str) -> None:
+    numbers = space.orbitals
+    said = f"the active space {space.label} of {name} with orbitals {', '.join(map(str, numbers)) or 'none'}"
+    if len(set(numbers)) < len(numbers) or any(number > count for number in numbers):
+        raise PlumbruleError(f"{said} cannot be: it needs different orbitals, numbered from 1 to {count}")
+    lone = [number for number in range(beta + 1, alpha + 1) if number not in numbers]
+    if lone:
+        raise PlumbruleError(f"{said} leaves out orbital {lone[0]}, which holds a single electron: add it")
+    held = sum((number <= alpha) + (number <= beta) for number in numbers)
+    if held != space.electrons:
         raise PlumbruleError(
-            f"with {space.electrons} active electrons, {electrons} are left for the inactive orbitals; they "
-            "must be paired: choose one active electron more or fewer"
+            f"{said} cannot be: these orbitals hold {held} electrons in the reference, not {space.electrons}"
         )
-    fullest = sorted(rest, key=lambda k: (-round(float(orbitals.occupations[k]), 2), k))[:pairs]
-    halves = [k + 1 for k in fullest if orbitals.occupations[k] < 2 - HALF_FILLED]
-    left_out = [k + 1 for k in rest if k not in set(fullest) and orbitals.occupations[k] > HALF_FILLED]
-    if len(fullest) < pairs or halves or left_out:
-        where = ", ".join(map(str, sorted({*halves, *left_out}))) or "none"
-        raise PlumbruleError(
-            f"the active space {space.label} with orbitals {', '.join(map(str, space.orbitals))} does not fit "
-            f"the reference: its electrons do not come out right at orbital {where}. Put every half-filled "
-            "orbital into the space, and count two electrons for each full one and one for each half-filled one"
-        )
-    return sorted(fullest)

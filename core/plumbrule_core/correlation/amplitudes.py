@@ -99,8 +99,8 @@ def _too_light(coefficients: Coefficients, leading: Leading) -> str:
     alpha, beta = len(coefficients.c1a), len(coefficients.c1b)
     said = (
         f"the reference determinant makes up only {100 * coefficients.c0**2:.1f} % of the wave function in "
-        f"the active space (at least {100 * WEIGHT_LIMIT:.0f} % are needed), so tailored coupled cluster cannot "
-        "stand on it"
+        f"the active space (at least {100 * WEIGHT_LIMIT:.0f} % are needed), so tailored coupled cluster "
+        "cannot stand on it"
     )
     others = [det for det in leading if det[1:] != (tuple(range(alpha)), tuple(range(beta)))]
     if not others:

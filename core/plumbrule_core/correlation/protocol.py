@@ -75,6 +75,8 @@ class Solved:
     notes: tuple[str, ...] = ()
     extrapolated: float | None = None
     extrapolation_error: float | None = None
+    narrow_entropies: Array | None = None
+    """Entropies at the cheaper of two settings, where the solver went through two."""
 
     @property
     def reference_weight(self) -> float:
@@ -87,6 +89,9 @@ class Tell(Protocol):
 
     def iteration(self, n: int, energy: float, residual: float | None = None, stage: str = "") -> None:
         """One iteration or sweep: energy in hartree."""
+
+    def progress(self, fraction: float, what: str = "") -> None:
+        """How far a stage without iterations of its own has come, 0 to 1."""
 
     def note(self, text: str) -> None:
         """A line for people."""

@@ -1,5 +1,6 @@
 """Small molecules in small active spaces, and a listener, for the tests of strong correlation."""
 
+import time
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -17,16 +18,25 @@ class Listener:
     stop_after: int | None = None
     energies: list[float] = field(default_factory=list)
     notes: list[str] = field(default_factory=list)
+    asked_at: float | None = None
+    """When the wish to stop arose, by the monotonic clock."""
 
     def iteration(self, n: int, energy: float, residual: float | None = None, stage: str = "") -> None:
         self.energies.append(energy)
-        if self.stop_after is not None and len(self.energies) >= self.stop_after:
-            raise Stopped
+        self._go_on()
+
+    def progress(self, fraction: float, what: str = "") -> None:
+        self._go_on()
 
     def note(self, text: str) -> None:
         self.notes.append(text)
-        if self.stop_after is not None and len(self.energies) >= self.stop_after:
-            raise Stopped
+        self._go_on()
+
+    def _go_on(self) -> None:
+        if self.stop_after is None or len(self.energies) < self.stop_after:
+            return
+        self.asked_at = self.asked_at or time.monotonic()
+        raise Stopped
 
 
 @pytest.fixture

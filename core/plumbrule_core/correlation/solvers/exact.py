@@ -30,8 +30,10 @@ PENALTIES = (0.2, 2.0)
 """Hartree per unit of <S2> too much; the second where a high-spin state lies too deep for the first."""
 SPIN_SLACK = 1e-3
 SHARED = "{} states share the lowest energy; the one nearest to the reference determinant was taken"
-VECTORS = 36
-"""Vectors of the space's size held at once, measured at the survey's peak."""
+SURVEY_SPACE, POLISH_SPACE = 6, 12
+"""Trial vectors of the eigensolver beyond four for every further root."""
+VECTORS = 40
+"""Vectors of the space's size held at once: trial vectors, their products, states and their residuals."""
 
 
 class Exact:
@@ -59,7 +61,7 @@ class Exact:
         needed = 8e-6 * VECTORS * count
         if needed > memory_mb:
             return (
-                f"{space} need about {needed:.0f} MB to be solved exactly, and {memory_mb:.0f} MB are there"
+                f"{space} take about {needed:.0f} MB to be solved exactly, and {memory_mb:.0f} MB are there"
             )
         return ""
 
@@ -74,7 +76,7 @@ class Exact:
         if beyond := self.reach(problem, memory_mb):
             raise PlumbruleError(beyond)
         with lib.with_omp_threads(threads):
-            return _solve(_Space(problem, tell, threads, memory_mb))
+            return _solve(Space(problem, tell, threads, memory_mb))
 
 
 def determinants(problem: Problem) -> int:
@@ -82,7 +84,7 @@ def determinants(problem: Problem) -> int:
     return math.comb(problem.size, problem.alpha) * math.comb(problem.size, problem.beta)
 
 
-class _Space:
+class Space:
     """One diagonalisation: the library's solver, the integrals in its form, and the way to tell."""
 
     def __init__(self, problem: Problem, tell: Tell, threads: int, memory_mb: float) -> None:
@@ -123,10 +125,10 @@ class _Space:
         return float(spin_op.spin_square(vector, n, self.electrons, mo_coeff=(np.eye(n), overlap))[0])
 
 
-def _solve(space: _Space) -> Solved:
+def _solve(space: Space) -> Solved:
     for penalty in PENALTIES:
-        energies, vectors, converged = _states(space, penalty)
-        kept = [k for k, vector in enumerate(vectors) if _right_spin(space, vector)]
+        energies, vectors, converged = states(space, penalty)
+        kept = [k for k, vector in enumerate(vectors) if right_spin(space, vector)]
         if kept:
             break
     else:
@@ -144,7 +146,8 @@ def _solve(space: _Space) -> Solved:
     return _described(space, energy + space.problem.core_energy, vector, converged, notes)
 
 
-def _right_spin(space: _Space, vector: Array) -> bool:
+def right_spin(space: Space, vector: Array) -> bool:
+    """Whether a state has the spin that was asked for; always so where the spin cannot be fixed."""
     return space.problem.unrestricted or abs(space.spin_squared(vector) - space.target) < SPIN_SLACK
 
 
@@ -157,17 +160,17 @@ def _nearest_to_reference(vectors: list[Array]) -> Array:
     return np.asarray(mixed / np.linalg.norm(mixed))
 
 
-def _states(space: _Space, penalty: float) -> tuple[Array, list[Array], bool]:
-    """The lowest states, exactly in a small space, loosely in a large one."""
+def states(space: Space, penalty: float) -> tuple[Array, list[Array], bool]:
+    """The lowest states (energies without the core's), exactly in a small space, loosely in a large one."""
     solver = space.solver(penalty)
     if math.prod(space.shape) <= DENSE:
         energies, vectors = _dense(space, solver)
         space.tell.iteration(1, float(energies[0]) + space.problem.core_energy, 0.0, "exact diagonalisation")
         return energies, vectors, True
-    return _davidson(space, solver, _starts(space, solver), SURVEYED, SURVEY_TOLERANCE)
+    return _davidson(space, solver, _starts(space, solver), roots=SURVEYED)
 
 
-def _dense(space: _Space, solver: Any) -> tuple[Array, list[Array]]:
+def _dense(space: Space, solver: Any) -> tuple[Array, list[Array]]:
     two = solver.absorb_h1e(space.one, space.two, space.problem.size, space.electrons, 0.5)
     count = math.prod(space.shape)
     units = np.eye(count).reshape(count, *space.shape)
@@ -178,7 +181,7 @@ def _dense(space: _Space, solver: Any) -> tuple[Array, list[Array]]:
     return energies, list(columns.T.reshape(count, *space.shape))
 
 
-def _starts(space: _Space, solver: Any) -> list[Array]:
+def _starts(space: Space, solver: Any) -> list[Array]:
     """The lowest states among the lowest determinants.
 
     A single determinant to start from would keep its symmetry to the end, and miss a lower state of another.
@@ -197,9 +200,7 @@ def _starts(space: _Space, solver: Any) -> list[Array]:
     return starts
 
 
-def _davidson(
-    space: _Space, solver: Any, starts: list[Array], roots: int, tolerance: float
-) -> tuple[Array, list[Array], bool]:
+def _davidson(space: Space, solver: Any, starts: list[Array], roots: int) -> tuple[Array, list[Array], bool]:
     energies, vectors = solver.kernel(
         space.one,
         space.two,
@@ -207,7 +208,8 @@ def _davidson(
         space.electrons,
         ci0=starts,
         nroots=roots,
-        tol=tolerance,
+        tol=SURVEY_TOLERANCE if roots > 1 else TOLERANCE,
+        max_space=SURVEY_SPACE if roots > 1 else POLISH_SPACE,
         max_cycle=200,
         callback=space.report,
     )
@@ -216,14 +218,12 @@ def _davidson(
     return np.atleast_1d(energies), shaped, converged
 
 
-def _polished(space: _Space, penalty: float, start: Array) -> tuple[float, Array, bool]:
-    energies, vectors, converged = _davidson(space, space.solver(penalty), [start], 1, TOLERANCE)
+def _polished(space: Space, penalty: float, start: Array) -> tuple[float, Array, bool]:
+    energies, vectors, converged = _davidson(space, space.solver(penalty), [start], roots=1)
     return float(energies[0]), vectors[0], converged
 
 
-def _described(
-    space: _Space, energy: float, vector: Array, converged: bool, notes: tuple[str, ...]
-) -> Solved:
+def _described(space: Space, energy: float, vector: Array, converged: bool, notes: tuple[str, ...]) -> Solved:
     from pyscf.fci import cistring, direct_spin1
 
     problem = space.problem

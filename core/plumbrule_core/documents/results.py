@@ -45,6 +45,8 @@ class Result(Document):
     reference: str
     """RHF, UHF, ROHF (or RKS, UKS)."""
     readings: tuple[Reading, ...] = ()
+    unchecked: bool = False
+    """The readings could not be taken, so nothing checks the energy."""
     arrays: FrozenMap[str, ArrayRef] = Field(default_factory=dict)
     notes: tuple[str, ...] = ()
     """What happened on the way, for the log and the report: `followed an instability 0.7 kJ/mol down`."""

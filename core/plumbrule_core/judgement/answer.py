@@ -28,7 +28,7 @@ def ladder(case: Case) -> tuple[LadderValue, ...]:
     """Every rung whose sum is complete at a basis set, in the order of the case; raises UnlikeRecipes."""
     if not case.parts:
         return ()
-    sums = {rung: _sums(case, rung) for rung in case.rungs}
+    sums = {rung: _sums(case, rung) for rung in case.rungs if RUNGS[rung].kind != "detection"}
     return tuple(_value(case, rung, at, sums.get("HF", {})) for rung, at in sums.items() if at)
 
 

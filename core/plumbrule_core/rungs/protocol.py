@@ -6,6 +6,7 @@ from typing import Any, Literal, Protocol
 
 import numpy as np
 
+from plumbrule_core.correlation.profile import Profile
 from plumbrule_core.correlation.protocol import Solved
 from plumbrule_core.documents.active_space import GrowthPoint, Space, SpaceRequest
 from plumbrule_core.documents.plan import Forecast, Machine, TaskSpec
@@ -27,7 +28,7 @@ class Size:
     unrestricted: bool = False
     density_fitting: bool = False
     active: tuple[int, int, int] | None = None
-    """Active orbitals, alpha and beta electrons, where the user set the space; None where it is yet to be found."""
+    """Active orbitals, alpha and beta electrons, where the user set the space; else None."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -112,14 +113,17 @@ class Bench:
     optimised: Any = None
     """The CASSCF object, with its orbitals and vector."""
     orbitals: Any = None
-    """The orbitals (functions, orbitals) that `space` and `growth_spaces` number from 1, shared by both spins;
-    the reference determinant fills the first alpha and the first beta ones. Left by the rung "Active space"
-    (`correlation.window`): canonical Hartree-Fock orbitals, or such with the valence virtual ones first. The
-    Fock matrix is diagonal only within their blocks, so (T) turns amplitudes to canonical orbitals before."""
+    """The orbitals (functions, orbitals) that `space` and `growth_spaces` number from 1, shared by both
+    spins; the reference determinant fills the first alpha and the first beta ones. Left by the rung "Active
+    space" (`correlation.window`): canonical Hartree-Fock orbitals, or such with the valence virtual ones
+    first. The Fock matrix is diagonal only within their blocks, so (T) turns amplitudes to canonical
+    orbitals before."""
     space: Space | None = None
     """The chosen active space, in `orbitals`; left by the rung "Active space"."""
+    profile: Profile | None = None
+    """Entropies and mutual information of the orbitals looked at; left by the rung "Active space"."""
     solved: Solved | None = None
-    """The wave function of `space`."""
+    """The wave function of `space`; None where there is none, or it was not solved again after a stop."""
     growth_spaces: tuple[Space, ...] = ()
     """The sizes to follow, each within the next, smallest first, the chosen one among them or not; empty
     where growth is not asked."""

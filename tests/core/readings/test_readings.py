@@ -167,7 +167,7 @@ def test_each_family_yields_only_the_names_it_declares(climb, make_task):
             for r in take(family.after, climbed.bench, make_task(HYDROXYL, family.after, multiplicity=2))
         }
         assert found <= set(family.names)
-    names = [name for family in READINGS for name in family.names]
+    names = [(family.after, name) for family in READINGS for name in family.names]
     assert len(names) == len(set(names))
 
 

@@ -17,6 +17,12 @@
 | `M` | MP2 | | (2 - n_DONO + sum |n_SOMO - 1| + n_UNO) / 2 from the MP2 occupations |
 | `mp2_largest_t2` | MP2 | | largest absolute first-order doubles amplitude |
 | `c0_squared` | CISD | | weight of the reference determinant |
+| `s1_max`, `s1_sum` | Active space | | largest entropy of an orbital of the window; their sum |
+| `zs1` | Active space | | mean entropy of the valence orbitals over ln 4 |
+| `c0_squared` | Active space | | weight of the reference determinant in the window |
+| `strongest_pairs` | Active space | | two orbital numbers and their mutual information, five times |
+| `profile_settled` | Active space | | the window's solution is right as far as two settings can tell |
+| `profile_change` | Active space | | largest change of an entropy between the two settings |
 | `T1` | CCSD | | norm of the singles amplitudes per correlated electron |
 | `D1` | CCSD | | largest singular value of the singles amplitudes |
 | `D2` | CCSD | | closed shells alone: the same for the doubles |
@@ -25,20 +31,21 @@
 | `triples` | CCSD(T) | hartree | the (T) correction |
 
 A reading that is not defined for a case (no pairs to correlate, an open shell) is absent, never zero.
-`c0_squared` of an active-space solve and the share of the atomisation energy are taken elsewhere.
+The share of the atomisation energy is taken elsewhere.
 """
 
 from plumbrule_core.documents.plan import TaskSpec
 from plumbrule_core.documents.results import Reading
 from plumbrule_core.judgement.readings.amplitudes import AMPLITUDES
 from plumbrule_core.judgement.readings.configuration import CONFIGURATION
+from plumbrule_core.judgement.readings.entropy import ENTROPY
 from plumbrule_core.judgement.readings.family import Family
 from plumbrule_core.judgement.readings.occupations import OCCUPATIONS
 from plumbrule_core.judgement.readings.reference import REFERENCE
 from plumbrule_core.judgement.readings.triples import TRIPLES
 from plumbrule_core.rungs.protocol import Bench
 
-READINGS: tuple[Family, ...] = (REFERENCE, OCCUPATIONS, CONFIGURATION, AMPLITUDES, TRIPLES)
+READINGS: tuple[Family, ...] = (REFERENCE, OCCUPATIONS, CONFIGURATION, ENTROPY, AMPLITUDES, TRIPLES)
 """Every family of readings."""
 
 

@@ -11,7 +11,8 @@ from plumbrule_core.documents.faults import Fault
 from plumbrule_core.elements import ELEMENTS
 
 Coordinate = Annotated[float, Field(ge=-1e4, le=1e4)]
-Name = Annotated[str, Field(min_length=1, max_length=80)]
+NAME_LENGTH = 80
+Name = Annotated[str, Field(min_length=1, max_length=NAME_LENGTH)]
 
 
 class Atom(Document):

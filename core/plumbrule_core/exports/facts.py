@@ -38,10 +38,11 @@ def task_rows(record: Record) -> tuple[TaskRow, ...]:
 
 def species_of(record: Record) -> tuple[Species, ...]:
     """The species of the question, then the fragments that were cut from them."""
-    planned = [task.spec.species for task in record.plan.tasks]
-    found = {one.name: one for one in (*planned, *record.brief.species)}
-    order = dict.fromkeys(one.name for one in (*record.brief.species, *planned))
-    return tuple(found[name] for name in order)
+    planned = (task.spec.species for task in record.plan.tasks)
+    named = {(one.name, one.content): one for one in record.brief.species}
+    known = {one.content for one in record.brief.species}
+    cut = {one.content: one for one in planned if one.content not in known}
+    return (*named.values(), *cut.values())
 
 
 def results_of(record: Record, species: Species) -> Iterator[tuple[Task, Result]]:

@@ -95,6 +95,11 @@ class SpeciesView:
         return None if self.exact_from_ccsd else self.number("share_of_triples")
 
 
+def _identity(species: Species) -> tuple[str, str]:
+    """The content as well as the name: two species of one name must never share their energies."""
+    return species.name, species.content
+
+
 def _is_ground(atom: Species) -> bool:
     ground = ELEMENTS[atom.atoms[0].symbol].ground_multiplicity
     return atom.charge == 0 and atom.multiplicity == ground
@@ -147,10 +152,10 @@ class Case:
 
     @cached_property
     def species(self) -> tuple[Species, ...]:
-        """The species of the question, each name once; all of the brief while the question is at fault."""
+        """The species of the question, each once; all of the brief while the question is at fault."""
         if not self.parts:
             return self.brief.species
-        return tuple({part.species.name: part.species for part in self.parts}.values())
+        return tuple({_identity(part.species): part.species for part in self.parts}.values())
 
     @cached_property
     def bases(self) -> tuple[Basis, ...]:
@@ -200,14 +205,15 @@ class Case:
         return tuple(self.view(one) for one in self.species)
 
     @cached_property
-    def _views(self) -> dict[str, SpeciesView]:
+    def _views(self) -> dict[tuple[str, str], SpeciesView]:
         return {}
 
     def view(self, species: Species) -> SpeciesView:
         """One species with its results."""
-        if species.name not in self._views:
-            self._views[species.name] = self._seen(species)
-        return self._views[species.name]
+        known = _identity(species)
+        if known not in self._views:
+            self._views[known] = self._seen(species)
+        return self._views[known]
 
     def _seen(self, species: Species) -> SpeciesView:
         names = tuple(basis.name for basis in self.bases)

@@ -56,8 +56,9 @@ def _spin_states(brief: Brief, species: tuple[Species, ...]) -> Iterator[str]:
     question = brief.question
     if not isinstance(question, BondQuestion) or not question.cut or question.fragment_multiplicities:
         return
+    given = {one.content for one in brief.species}
     for one in species:
-        if one.name not in brief.by_name:
+        if one.content not in given:
             spin = spin_words(one.multiplicity)
             yield f"{one.name} ({one.formula}) is taken as {spin}: its proposed ground state."
 

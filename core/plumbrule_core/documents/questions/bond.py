@@ -8,7 +8,7 @@ from plumbrule_core.documents.bonding import bonds, distance, pieces
 from plumbrule_core.documents.faults import Fault
 from plumbrule_core.documents.ground_states import ground_multiplicity
 from plumbrule_core.documents.questions.base import Clause, Many, Part, QuestionBase, unbalanced
-from plumbrule_core.documents.species import Atom, Species
+from plumbrule_core.documents.species import NAME_LENGTH, Atom, Species
 
 AtomNumber = Annotated[int, Field(ge=1)]
 
@@ -118,11 +118,19 @@ class BondQuestion(QuestionBase):
 
 def _fragment(whole: Species, side: tuple[int, ...], multiplicity: int | None) -> Species:
     atoms: tuple[Atom, ...] = tuple(whole.atoms[place] for place in side)
-    numbers = ",".join(str(place + 1) for place in side)
     return Species(
-        name=f"{whole.name} atoms {numbers}"[:80],
+        name=_fragment_name(whole.name, [place + 1 for place in side]),
         atoms=atoms,
         charge=0,
         multiplicity=multiplicity or ground_multiplicity(atoms, 0),
         origin=f"cut from {whole.name}, not relaxed",
     )
+
+
+def _fragment_name(whole: str, numbers: list[int]) -> str:
+    """`ethane atoms 1,3`: the whole's name is shortened, never the numbers, which tell two fragments apart."""
+    listed = ",".join(map(str, numbers))
+    if len(listed) > NAME_LENGTH // 2:
+        listed = f"from {numbers[0]}, {len(numbers)} in all"
+    ending = f" atoms {listed}"
+    return whole[: NAME_LENGTH - len(ending)] + ending

@@ -86,7 +86,8 @@ def _known(name: str) -> str:
 def _needed(brief: Brief) -> tuple[Species, ...]:
     if brief.question is None or brief.faults():
         return brief.species
-    return tuple({part.species.name: part.species for part in brief.question.parts(brief.by_name)}.values())
+    parts = brief.question.parts(brief.by_name)
+    return tuple({part.species.content: part.species for part in parts}.values())
 
 
 def _task(species: Species, rung: str, settings: Settings, forecast: Forecast) -> Task:

@@ -1,6 +1,10 @@
 """Three solvers, one answer: exact, DMRG and selected CI against published values and against each other."""
 
+import os
+import subprocess
+import sys
 import time
+from pathlib import Path
 from typing import Any
 
 import numpy as np
@@ -243,3 +247,42 @@ def test_no_solver_ends_above_its_reference_determinant(space_of: Any, listener:
     problem = space_of(0, 4, 1, FOUR, "sto-3g")
     for solver in (Exact(), SelectedCI()):
         assert solve(solver, problem, listener).energy < reference_energy(problem)
+
+
+ORPHAN = """
+import sys
+import numpy as np
+from plumbrule_core.correlation.protocol import Problem
+from plumbrule_core.correlation.solvers.dmrg import DMRG
+
+class Loud:
+    def iteration(self, *_): pass
+    def progress(self, fraction, what=""): print(what, flush=True)
+
+size = 12
+rng = np.random.default_rng(2)
+one = rng.normal(size=(size, size))
+factor = rng.normal(size=(2, size, size))
+factor += factor.transpose(0, 2, 1)
+two = np.einsum("xpq,xrs->pqrs", factor, factor)
+problem = Problem(one=one + one.T, two=two, alpha=6, beta=6, multiplicity=1)
+DMRG(300).solve(problem, Loud(), threads=1, memory_mb=2000)
+"""
+
+
+@needs_dmrg
+def test_the_engine_ends_with_the_process_that_asked_for_it(tmp_path: Path) -> None:
+    paths = {"TMPDIR": str(tmp_path)}
+    paths |= {"PYTHONPATH": os.pathsep.join(str(Path(entry).absolute()) for entry in sys.path if entry)}
+    parent = subprocess.Popen(
+        [sys.executable, "-c", ORPHAN], stdout=subprocess.PIPE, env=os.environ | paths, text=True
+    )
+    with parent:
+        assert parent.stdout is not None
+        while "start" not in parent.stdout.readline():
+            assert parent.poll() is None
+        engines = psutil.Process(parent.pid).children()
+        assert len(engines) == 1
+        parent.kill()
+    _, left = psutil.wait_procs(engines, timeout=2)
+    assert not left

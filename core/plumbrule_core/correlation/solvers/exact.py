@@ -115,14 +115,17 @@ class Space:
 
     def spin_squared(self, vector: Array) -> float:
         """<S2>; not a number where the overlap of alpha and beta orbitals is unknown."""
-        from pyscf.fci import spin_op
+        from pyscf.fci import direct_spin1, spin_op
 
         n, overlap = self.problem.size, self.problem.overlap
         if not self.problem.unrestricted:
             return float(spin_op.spin_square0(vector, n, self.electrons)[0])
         if overlap is None:
             return math.nan
-        return float(spin_op.spin_square(vector, n, self.electrons, mo_coeff=(np.eye(n), overlap))[0])
+        pairs = direct_spin1.make_rdm12s(vector, n, self.electrons)[1][1]
+        projection = (self.electrons[0] - self.electrons[1]) / 2
+        flips = self.electrons[1] - np.einsum("rpqs,pq,rs->", pairs, overlap, overlap)
+        return float(projection * (projection + 1) + flips)
 
 
 def _solve(space: Space) -> Solved:

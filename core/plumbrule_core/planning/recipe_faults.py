@@ -7,6 +7,8 @@ from plumbrule_core.documents.faults import Fault
 from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.documents.species import Species, spin_words
 from plumbrule_core.planning.basis_faults import basis_faults
+from plumbrule_core.planning.decisions import sets_of
+from plumbrule_core.planning.sizes import frozen_of
 from plumbrule_core.rungs import RUNGS
 
 LATER = (
@@ -24,6 +26,7 @@ def recipe_faults(recipe: Recipe, species: tuple[Species, ...]) -> tuple[Fault, 
         *_rung_faults(recipe),
         *basis_faults(recipe, species),
         *_reference_faults(recipe, species),
+        *_closed_shell_faults(recipe, species),
         *_later_faults(recipe),
     )
 
@@ -58,6 +61,20 @@ def _reference_faults(recipe: Recipe, species: tuple[Species, ...]) -> Iterator[
                 "use reference = 'auto' or 'UHF'"
             )
             yield Fault(where="recipe.reference", says=says)
+
+
+def _closed_shell_faults(recipe: Recipe, species: tuple[Species, ...]) -> Iterator[Fault]:
+    """Rungs that the library has for RHF alone; three electrons or fewer have no quadruples to miss."""
+    asked = [name for name in recipe.rungs if getattr(RUNGS.get(name), "closed_shells_only", False)]
+    for one in species:
+        open_shell = one.multiplicity > 1 or recipe.reference in ("UHF", "ROHF")
+        few = any(one.electrons - 2 * frozen_of(one, basis) < 4 for basis in sets_of(recipe))
+        for name in asked if open_shell and not few else ():
+            says = (
+                f"{name} is for closed shells on RHF only, and {one.name} would stand on an open-shell "
+                "reference; take CCSDT as the top rung"
+            )
+            yield Fault(where="recipe.rungs", says=says)
 
 
 def _later_faults(recipe: Recipe) -> Iterator[Fault]:

@@ -9,6 +9,7 @@ from plumbrule_core.rungs.ccsdt_full import CCSDT
 from plumbrule_core.rungs.ccsdt_q import PerturbativeQuadruples
 from plumbrule_core.rungs.cisd import CISD
 from plumbrule_core.rungs.density_functionals import B3LYP, M06_2X, PBE
+from plumbrule_core.rungs.fci import FCI
 from plumbrule_core.rungs.hartree_fock import HartreeFock
 from plumbrule_core.rungs.mp2 import MP2
 from plumbrule_core.rungs.protocol import Rung
@@ -21,6 +22,7 @@ _ALL: tuple[Rung, ...] = (
     PerturbativeTriples(),
     CCSDT(),
     PerturbativeQuadruples(),
+    FCI(),
     PBE,
     B3LYP,
     M06_2X,

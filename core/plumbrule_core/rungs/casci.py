@@ -1,5 +1,7 @@
 """CASCI: every arrangement of the active electrons in the active orbitals, in the field of all others."""
 
+from collections.abc import Mapping
+
 from plumbrule_core.correlation.protocol import Solved
 from plumbrule_core.correlation.solvers import SOLVERS
 from plumbrule_core.documents.plan import Forecast, Machine
@@ -22,7 +24,7 @@ class CASCI:
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space")
     rank = 2
-    single_reference = False
+    single_reference: bool = False
     citation = "B. O. Roos, P. R. Taylor and P. E. M. Siegbahn, Chem. Phys. 48, 157 (1980)"
     published: tuple[Published, ...] = ()
 
@@ -64,7 +66,9 @@ def one_determinant(division: Division, given: Given) -> Outcome:
     )
 
 
-def outcome_of(solved: Solved, division: Division, given: Given) -> Outcome:
+def outcome_of(
+    solved: Solved, division: Division, given: Given, used: Mapping[str, str] | None = None
+) -> Outcome:
     """Energy, weights and occupations of a solved space, in words and arrays."""
     occupations = natural_occupations(solved)
     return Outcome(
@@ -82,6 +86,7 @@ def outcome_of(solved: Solved, division: Division, given: Given) -> Outcome:
             "weight of the reference": f"{solved.reference_weight:.4f}",
             "S squared": f"{solved.spin_squared:.4f}",
             "threads": str(given.threads),
+            **(used or {}),
         },
         arrays={"active_occupations": occupations},
         space=division.space,

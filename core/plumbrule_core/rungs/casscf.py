@@ -31,7 +31,7 @@ class CASSCF:
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space")
     rank = 4
-    single_reference = False
+    single_reference: bool = False
     citation = (
         "B. O. Roos, P. R. Taylor and P. E. M. Siegbahn, Chem. Phys. 48, 157 (1980); Q. Sun, J. Yang and "
         "G. K.-L. Chan, Chem. Phys. Lett. 683, 291 (2017)"

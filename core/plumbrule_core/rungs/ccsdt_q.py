@@ -26,6 +26,7 @@ class PerturbativeQuadruples:
     needs: tuple[str, ...] = ("HF", "CCSDT")
     rank = 60
     single_reference = True
+    closed_shells_only = True
     citation = "Y. J. Bomble, J. F. Stanton, M. Kallay and J. Gauss, J. Chem. Phys. 123, 054101 (2005)"
     published: tuple[Published, ...] = (
         HYDROGEN.gives(-1.137276),

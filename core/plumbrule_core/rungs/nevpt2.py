@@ -28,7 +28,7 @@ class NEVPT2:
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space", "CASSCF")
     rank = 25
-    single_reference = False
+    single_reference: bool = False
     citation = (
         "C. Angeli, R. Cimiraglia, S. Evangelisti, T. Leininger and J.-P. Malrieu, J. Chem. Phys. 114, 10252 "
         "(2001); C. Angeli, R. Cimiraglia and J.-P. Malrieu, J. Chem. Phys. 117, 9138 (2002)"
@@ -85,14 +85,14 @@ def perturbation(field: Any, frozen: int) -> float:
 
     orbitals, vector, energies = field.canonicalize(field.mo_coeff, ci=field.ci, cas_natorb=True)
     orbitals = aligned(orbitals, energies, field)
-    core = orbitals[:, :frozen]
-    method = nevpt2.NEVPT(field)
-    method.canonicalized, method.ci, method.verbose = True, vector, 0
-    method.mo_coeff, method.mo_energy = orbitals[:, frozen:], np.asarray(energies)[frozen:]
-    method.ncore = field.ncore - frozen
+    core, seen = orbitals[:, :frozen], field.copy()
+    seen.ncore = field.ncore - frozen
     if frozen:
         with_core = field.get_hcore() + field.get_veff(field.mol, 2 * core @ core.T)
-        method.get_hcore = lambda *_: with_core
+        seen.get_hcore = lambda *_: with_core
+    method = nevpt2.NEVPT(seen)
+    method.canonicalized, method.ci, method.verbose = True, vector, 0
+    method.mo_coeff, method.mo_energy = orbitals[:, frozen:], np.asarray(energies)[frozen:]
     return float(method.kernel())
 
 

@@ -3,7 +3,9 @@
 import pytest
 
 from plumbrule_core.documents.plan import Machine
+from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.errors import PlumbruleError, Stopped
+from plumbrule_core.planning.recipe_faults import recipe_faults
 from plumbrule_core.rungs import RUNGS
 from plumbrule_core.rungs.protocol import Size
 
@@ -119,3 +121,16 @@ def test_the_forecast_of_a_large_molecule_exceeds_a_laptop_and_that_of_a_small_o
     assert small.seconds_high < 600
     assert large.memory_mb > 100_000
     assert large.seconds > 1e6
+
+
+def test_quadruples_of_an_open_shell_are_a_fault_of_the_recipe_before_anything_runs(make_task):
+    recipe = Recipe(basis=("cc-pVDZ",), rungs=("HF", "CCSDT(Q)"))
+    hydroxyl, fluoride, hydrogen = (
+        make_task(xyz, "HF", multiplicity=spin).species
+        for xyz, spin in ((HYDROXYL, 2), (FLUORIDE, 1), ("H 0 0 0", 2))
+    )
+    faults = recipe_faults(recipe, (hydroxyl, fluoride, hydrogen))
+    assert [fault.where for fault in faults] == ["recipe.rungs"]
+    assert "closed shells on RHF only" in faults[0].says
+    assert "take CCSDT as the top rung" in faults[0].says
+    assert not recipe_faults(Recipe(basis=("cc-pVDZ",), rungs=("HF", "CCSDT")), (hydroxyl,))

@@ -9,6 +9,7 @@ from plumbrule_core.correlation.integrals import problem_from
 from plumbrule_core.correlation.protocol import Problem
 from plumbrule_core.documents.active_space import Space
 from plumbrule_core.errors import PlumbruleError
+from plumbrule_core.rungs.correlated.reference import fitting_of
 from plumbrule_core.rungs.protocol import Bench, Given
 
 
@@ -75,6 +76,7 @@ def problem_of(division: Division, given: Given, coefficients: np.ndarray | None
         range(division.inactive),
         range(block.start, block.stop),
         given.spec.species.multiplicity,
+        fitting_of(given) if given.spec.settings.density_fitting else None,
     )
 
 

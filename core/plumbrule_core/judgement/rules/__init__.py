@@ -15,12 +15,14 @@ from plumbrule_core.judgement.rules import (
     shape,
     spin,
     target,
+    unchecked,
 )
 from plumbrule_core.judgement.rules.base import Rule
 
 RULES: tuple[Rule, ...] = (
     *one_determinant.RULES,
     *convergence.RULES,
+    *unchecked.RULES,
     *reference.RULES,
     *spin.RULES,
     *amplitudes.RULES,

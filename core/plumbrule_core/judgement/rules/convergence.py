@@ -21,7 +21,7 @@ def _unconverged(case: Case) -> Iterator[Finding]:
 
 
 def _not_arrived(case: Case, view: SpeciesView, rung: str, basis: str, result: Result) -> Finding:
-    blocked = tuple(name for name in case.rungs if name == rung or rung in _all_needs(name))
+    blocked = stands_on(case, rung)
     above = (
         f", nor is anything above it ({', '.join(name for name in blocked if name != rung)})"
         if len(blocked) > 1
@@ -43,6 +43,11 @@ def _not_arrived(case: Case, view: SpeciesView, rung: str, basis: str, result: R
             *(active_space(case) if rung != "HF" else ()),
         ),
     )
+
+
+def stands_on(case: Case, rung: str) -> tuple[str, ...]:
+    """The rung and those above that need it."""
+    return tuple(name for name in case.rungs if name == rung or rung in _all_needs(name))
 
 
 def _all_needs(rung: str) -> frozenset[str]:

@@ -29,9 +29,8 @@ def method_line(case: Case, best: LadderValue, values: Sequence[LadderValue], ki
 
 
 def _exact(case: Case, rung: str) -> bool:
-    """CCSD and what stands on it are exact where no species has more than two correlated electrons."""
-    above = rung in ("CCSD", "CCSD(T)")
-    return above and all(view.exact_from_ccsd for view in case.views)
+    """CISD, CCSD and what is above are exact where no species has more than two correlated electrons."""
+    return not any(view.inexact(rung) for view in case.views)
 
 
 def _beyond_triples(case: Case, best: LadderValue, values: Sequence[LadderValue]) -> BudgetLine:

@@ -86,8 +86,12 @@ class SpeciesView:
 
     @property
     def exact_from_ccsd(self) -> bool:
-        """Whether at most two electrons are correlated, so that CCSD is exact for any reference."""
+        """Whether at most two electrons are correlated, so that CISD and CCSD are exact."""
         return self.correlated_electrons <= 2
+
+    def inexact(self, rung: str) -> bool:
+        """Whether the rung leaves something out: of two electrons only HF, MP2 and the functionals do."""
+        return not self.exact_from_ccsd or rung in ("HF", "MP2") or RUNGS[rung].kind != "wave function"
 
     @property
     def share_of_triples(self) -> float | None:
@@ -189,6 +193,10 @@ class Case:
     def single_reference(self) -> tuple[str, ...]:
         """The rungs that stand on one determinant, functionals included."""
         return tuple(name for name in self.rungs if RUNGS[name].single_reference)
+
+    def doubtful(self, view: SpeciesView) -> tuple[str, ...]:
+        """The rungs that stand on one determinant and are not exact for this species all the same."""
+        return tuple(name for name in self.single_reference if view.inexact(name))
 
     @cached_property
     def _by_content(self) -> Mapping[str, Mapping[Key, Result]]:

@@ -1,8 +1,8 @@
 """Does one determinant describe a species? Independent families of readings, each graded 0 to 3.
 
-No single reading decides. The families are the stability of the reference, the doubles and the singles
-amplitudes, the weight of the triples, the natural occupations, and the spin. Grades: 0 calm, 1 raised,
-2 serious, 3 broken. Limits are published ones where there are any; how far beyond them is serious is
+No single reading decides about coupled cluster. The families are the stability of the reference, the doubles
+and the singles amplitudes, the weight of the triples, the natural occupations, the weight of the reference
+determinant, the spin, and whether CCSD converged. Grades: 0 calm, 1 raised, 2 serious, 3 broken. Limits are published ones where there are any; how far beyond them is serious is
 our own calibration (`thresholds.json` names each).
 """
 
@@ -108,16 +108,36 @@ def spin_grade(view: SpeciesView) -> Grade:
     return _worst("spin", _grade("s2_excess", view.number("s2_excess"), ("spin_care", "spin_stop")))
 
 
+def configuration_grade(view: SpeciesView) -> Grade:
+    """The weight of the reference determinant, of CISD or of the active space.
+
+    The weight of CISD falls with the number of electrons too, so this family is raised, never more.
+    """
+    weight, limit = view.number("c0_squared"), THRESHOLDS["c0_squared"]
+    if weight is None or weight >= limit.value:
+        return Grade("configuration", 0)
+    return Grade("configuration", 1, (evidence_of("c0_squared", weight, limit),))
+
+
+def convergence_grade(view: SpeciesView) -> Grade:
+    """CCSD that does not converge is raised: it often fails where one determinant does."""
+    lost = [one for (rung, _), one in view.results.items() if rung in ("CCSD", "CCSDT") and not one.converged]
+    if not lost:
+        return Grade("convergence", 0)
+    shown = Evidence(reading=f"iterations of {lost[0].rung}", value=float(lost[0].iterations))
+    return Grade("convergence", 1, (shown,))
+
+
 def grades(case: Case, view: SpeciesView) -> tuple[Grade, ...]:
-    """Every family; all calm where CCSD is exact whatever the reference."""
-    if view.exact_from_ccsd:
-        return ()
+    """Every family."""
     plain: tuple[Callable[[SpeciesView], Grade], ...] = (
         reference_grade,
         doubles_grade,
         singles_grade,
         occupations_grade,
         spin_grade,
+        configuration_grade,
+        convergence_grade,
     )
     return (*(family(view) for family in plain), triples_grade(view, case))
 
@@ -134,5 +154,7 @@ FAMILY_WORDS: Mapping[str, str] = {
     "triples": "triple excitations weigh heavily",
     "occupations": "orbitals are far from doubly occupied or empty",
     "spin": "the reference is not a clean spin state",
+    "configuration": "the reference determinant has less weight than it should",
+    "convergence": "coupled cluster did not converge",
 }
 """What each family says, in words."""

@@ -74,6 +74,8 @@ SYSTEMS: dict[str, tuple[str, int, str]] = {
     "OH": ("O 0 0 0; H 0 0 0.9697", 2, "cc-pVDZ"),
     "CN": ("C 0 0 0; N 0 0 1.1718", 2, "cc-pVDZ"),
     "H2 at 2.2 A": ("H 0 0 0; H 0 0 2.2", 1, "cc-pVDZ"),
+    "H2 at 3.0 A": ("H 0 0 0; H 0 0 3.0", 1, "cc-pVDZ"),
+    "LiF at 5.0 A": ("Li 0 0 0; F 0 0 5.0", 1, "cc-pVDZ"),
     "N": ("N 0 0 0", 4, "cc-pVDZ"),
     "O": ("O 0 0 0", 3, "cc-pVDZ"),
     "F": ("F 0 0 0", 2, "cc-pVDZ"),
@@ -100,6 +102,9 @@ def record(xyz: str, multiplicity: int, basis: str) -> dict[str, object]:
         energies[rung] = outcome.energy
         notes += [] if rung != "HF" else outcome.notes
         readings |= {r.name: r.value for r in take(rung, bench, spec) if r.name not in LISTS}
+        if not outcome.converged:
+            notes.append(f"{rung} did not converge")
+            break
     shown = {"xyz": xyz, "multiplicity": multiplicity, "basis": basis}
     return {**shown, "energies": energies, "readings": readings, "notes": notes}
 

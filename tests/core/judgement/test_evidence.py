@@ -30,6 +30,9 @@ GRADED = [
     ({"instability_depth": 0.01, "uhf_fractional": 0.6}, "reference", 2),
     ({"instability_depth": 0.01, "uhf_fractional": 0.95}, "reference", 3),
     ({"instability_depth": 0.16, "uhf_fractional": 0.6}, "reference", 3),
+    ({"c0_squared": 0.91}, "configuration", 0),
+    ({"c0_squared": 0.89}, "configuration", 1),
+    ({"c0_squared": 0.30}, "configuration", 1),
     ({"s2_excess": 0.2}, "spin", 1),
     ({"s2_excess": 0.6}, "spin", 2),
 ]

@@ -66,7 +66,7 @@ def test_ccsd_of_two_electrons_is_exact_whatever_the_reference(recorded: Recorde
     found = recorded(one="H2 at 2.2 A")
     assert found.answer is not None
     assert found.answer.rung == "CCSD(T)"
-    assert not any(one.severity == "stop" for one in found.findings)
+    assert not any(one.severity == "stop" and "CCSD(T)" in one.rungs for one in found.findings)
     touching = [one for one in found.findings if not one.rungs or "CCSD(T)" in one.rungs]
     assert all(
         one.code in {"total-energy", "bond-stretched", "unbonded-pieces", "looks-like-bohr"}

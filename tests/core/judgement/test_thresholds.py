@@ -17,6 +17,7 @@ PUBLISHED = [
     ("tae_moderate", 5.0, "Karton"),  # D15
     ("tae_severe", 10.0, "Karton"),
     ("m_large", 0.1, "Tishchenko"),  # D18
+    ("c0_squared", 0.9, "Lee, Rice, Scuseria and Schaefer"),  # SCIENCE, Thresholds
 ]
 
 

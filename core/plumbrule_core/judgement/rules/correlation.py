@@ -77,7 +77,7 @@ def _diradical(case: Case, view: SpeciesView) -> Finding | None:
         code="diradical",
         severity="care",
         species=view.name,
-        rungs=("HF", "MP2") if view.exact_from_ccsd else case.single_reference,
+        rungs=case.doubtful(view),
         headline=f"{view.name} is a diradical in its unrestricted solution: two orbitals hold one "
         "electron each.",
         consequence="A singlet with two open orbitals needs two determinants; one of them gives an "

@@ -68,7 +68,6 @@ def _unstable(case: Case, view: SpeciesView) -> Finding | None:
     if depth is None or depth <= limit.value:
         return None
     deep = depth > THRESHOLDS["instability_depth_care"].value
-    below_ccsd = tuple(name for name in case.single_reference if name in ("HF", "MP2"))
     shown = [evidence_of("instability_depth", depth, THRESHOLDS["instability_depth_care"] if deep else limit)]
     if (unpaired := view.number("uhf_fractional")) is not None:
         shown.append(Evidence(reading="uhf_fractional", value=unpaired, unit="electrons"))
@@ -76,7 +75,7 @@ def _unstable(case: Case, view: SpeciesView) -> Finding | None:
         code="hf-unstable-external",
         severity="care" if deep else "note",
         species=view.name,
-        rungs=below_ccsd if view.exact_from_ccsd else case.single_reference,
+        rungs=case.doubtful(view),
         headline=f"{view.name}: an unrestricted solution lies {amount(depth, case.unit)} below the "
         "restricted one.",
         consequence=(

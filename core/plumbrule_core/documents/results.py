@@ -56,6 +56,13 @@ class Result(Document):
     """The active space that the energy stands on, where there is one."""
     growth: tuple[GrowthPoint, ...] = ()
     """How the energies move as the active space grows, smallest space first."""
+    stands_on: FrozenMap[str, float] = Field(default_factory=dict)
+    """The energies in hartree that the rungs below had when this was computed, by their names."""
+
+    @property
+    def settled(self) -> bool:
+        """Whether nothing is left to compute: it converged, and its readings were taken."""
+        return self.converged and not self.unchecked
 
     def reading(self, name: str) -> ReadingValue | None:
         """The value of one reading, or None."""

@@ -11,8 +11,9 @@ from pathlib import Path
 from plumbrule_core.documents.events import Failed, Finished, Log, Measured, Started, TaskStopped
 from plumbrule_core.documents.plan import Task, TaskSpec
 from plumbrule_core.documents.results import Reading, Result
+from plumbrule_core.engine.answers import Answers
 from plumbrule_core.engine.blobs import save_array
-from plumbrule_core.engine.order import Order
+from plumbrule_core.engine.order import Order, because_of
 from plumbrule_core.engine.own_process import PeakMemory
 from plumbrule_core.engine.shelf import FolderShelf, ignore
 from plumbrule_core.engine.speaking import Silent, Speaker, Teller
@@ -21,6 +22,10 @@ from plumbrule_core.rungs.protocol import Bench, Given, Outcome, Rung, Tell
 
 Take = Callable[[str, Bench, TaskSpec], Iterable[Reading]]
 """Takes every reading that a rung yields, by its name, right after it was computed."""
+
+
+class _Moved(Exception):
+    """A rung below was found elsewhere than before: it must be told anew before the task can go on."""
 
 
 class Chain:
@@ -44,18 +49,23 @@ class Chain:
         self._bench = Bench()
         self._computed: set[str] = set()
         self._failed: set[str] = set()
+        self._told: set[str] = set()
+        self._answers = Answers(order)
+        self._moved: dict[str, str] = {}
 
     def run(self) -> None:
         """Every open task in turn; a failed one stops those that need it, and no other."""
-        for task in self._order.open_tasks:
-            if self._asked_to_stop.is_set():
-                return
+        while not self._asked_to_stop.is_set() and (task := self._next()) is not None:
             self._answer(task)
+
+    def _next(self) -> Task | None:
+        tasks = self._order.tasks
+        return next((task for task in tasks if task.id not in self._told and task not in self._answers), None)
 
     def _answer(self, task: Task) -> None:
         missing = next((need for need in self._order.needs(task) if need.id in self._failed), None)
         if missing is not None:
-            self._fail(task, f"not run because {missing.label} failed")
+            self._fail(task, because_of(missing))
             return
         shelf = FolderShelf(Path(self._order.shelf), task.id)
         resumed_from = f"the checkpoint of {shelf.written}" if shelf.written else ""
@@ -66,8 +76,13 @@ class Chain:
             result = self._measured(task, teller)
             teller.close()
             self._speaker.say(Finished, task=task.id, result=result)
+            self._told.add(task.id)
+            self._answers.settle(task, result.energy)
+        except _Moved:
+            teller.close()
         except Stopped:
             teller.close()
+            self._told.add(task.id)
             self._speaker.say(TaskStopped, task=task.id)
         # A library may also call exit(): no fault of one task may cost the others.
         except (Exception, SystemExit) as error:
@@ -76,22 +91,26 @@ class Chain:
 
     def _fail(self, task: Task, reason: str) -> None:
         self._failed.add(task.id)
+        self._told.add(task.id)
         self._speaker.say(Failed, task=task.id, reason=reason)
 
     def _stand_on(self, task: Task, teller: Teller) -> None:
-        """Compute again what this task needs and an earlier run has answered."""
+        """Compute again what this task needs and an earlier run has answered; raises _Moved."""
         for need in self._order.needs(task):
             if need.id in self._computed:
                 continue
             self._stand_on(need, teller)
             teller.note(f"{need.spec.rung} is known already; it is loaded again because this needs it")
             try:
-                self._computed_outcome(need, Silent(self._asked_to_stop), ignore)
+                outcome = self._computed_outcome(need, Silent(self._asked_to_stop), ignore)
             except PlumbruleError as error:
                 self._failed.add(need.id)
                 raise PlumbruleError(
                     f"{need.label}, which this needs, could not be loaded again: {error}"
                 ) from error
+            if moved := self._answers.moved(need, float(outcome.energy)):
+                self._moved[need.id] = moved
+                raise _Moved
 
     def _computed_outcome(self, task: Task, tell: Tell, say: Callable[[str], None]) -> Outcome:
         rung = self._rungs.get(task.spec.rung)
@@ -118,8 +137,11 @@ class Chain:
 
     def _measured(self, task: Task, teller: Teller) -> Result:
         memory, begun = PeakMemory(), time.perf_counter()
+        moved = (self._moved[task.id],) if task.id in self._moved else ()
+        for text in moved:
+            teller.note(text)
         outcome = self._computed_outcome(task, teller, teller.log)
-        readings, notes = self._readings(task)
+        readings, broken = self._readings(task)
         blobs = Path(self._order.blobs)
         spec = task.spec
         return Result(
@@ -134,14 +156,19 @@ class Chain:
             iterations=int(outcome.iterations),
             reference=outcome.reference,
             readings=readings,
+            unchecked=bool(broken),
             arrays={name: save_array(blobs, array) for name, array in outcome.arrays.items()},
-            notes=(*outcome.notes, *notes),
+            notes=(*moved, *outcome.notes, *broken),
             used={**self._versions, "threads": str(self._order.threads), **outcome.used},
             space=outcome.space,
             growth=outcome.growth,
+            stands_on={need.spec.rung: self._energy(need) for need in self._order.needs(task)},
             seconds=time.perf_counter() - begun,
             memory_mb=memory.mb(),
         )
+
+    def _energy(self, task: Task) -> float:
+        return float(self._bench.outcomes[task.spec.rung].energy)
 
     def _readings(self, task: Task) -> tuple[tuple[Reading, ...], tuple[str, ...]]:
         """The readings, or a note why there are none: a reading that breaks must not cost the energy."""

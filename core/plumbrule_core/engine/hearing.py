@@ -39,6 +39,7 @@ class Hearing:
         """`deliver` gets every event, numbered from 0."""
         self._deliver = deliver
         self._open = [task.id for task in order.open_tasks]
+        self._known = set(order.known)
         self._speaks_of = self._open[0] if self._open else ""
         self._running = ""
         self._seq = 0
@@ -64,7 +65,7 @@ class Hearing:
             self._greet(event)
         elif isinstance(event, Failed) and not event.task:
             raise Unfit(event.reason)
-        elif self._greeted and event.task in self._open and _fits(event):
+        elif self._greeted and self._expects(event) and _fits(event):
             self._take(event)
         else:
             self._complain("a message that does not belong here", line)
@@ -103,10 +104,17 @@ class Hearing:
         self._greeted = True
         self._pass(hello)
 
+    def _expects(self, event: Event) -> bool:
+        """Open tasks are spoken of; a known one is opened again by its start alone."""
+        return event.task in self._open or (isinstance(event, Started) and event.task in self._known)
+
     def _take(self, event: Event) -> None:
         self._speaks_of = event.task
         if isinstance(event, Started):
             self._running = event.task
+            if event.task not in self._open:
+                self._known.remove(event.task)
+                self._open.append(event.task)
         if isinstance(event, Finished | Failed | TaskStopped):
             self._open.remove(event.task)
             self._running = "" if self._running == event.task else self._running

@@ -10,13 +10,13 @@ from itertools import count, groupby
 from pathlib import Path
 from typing import Literal
 
-from plumbrule_core.documents.events import Event, Failed, Finished
+from plumbrule_core.documents.events import Event, Failed, Finished, Started
 from plumbrule_core.documents.plan import Plan, Task
 from plumbrule_core.documents.results import Result
 from plumbrule_core.engine.cache import blob_folder, prune, shelf_folder
 from plumbrule_core.engine.executor import Executor, Handle, OnEvent
 from plumbrule_core.engine.hearing import Ending
-from plumbrule_core.engine.order import Order
+from plumbrule_core.engine.order import Known, Order, because_of
 
 Outcome = Literal["done", "failed", "stopped"]
 """All tasks are answered; at least one task failed or its worker died; the user stopped before the end."""
@@ -42,7 +42,6 @@ class Run:
         self._on_event = on_event
         self._tidy = tidy
         self._numbers = count()
-        self._lock = threading.Lock()
         self._asked_to_stop = False
         self._handle: Handle | None = None
         self._error: Exception | None = None
@@ -65,9 +64,9 @@ class Run:
 
     def stop(self) -> None:
         """Stop within two seconds; what was checkpointed stays, nothing else starts. Never waits."""
-        with self._lock:
-            self._asked_to_stop = True
-            handle = self._handle
+        self._asked_to_stop = True
+        # No lock: a start of a process may hold one for long, and the window calls this.
+        handle = self._handle
         if handle is not None:
             handle.ask("stop")
 
@@ -103,19 +102,46 @@ class Run:
         return "failed" if self._failed or self._error else "done"
 
     def _work_off(self, order: Order) -> None:
+        """Until every task is answered: after a death, what does not stand on the dead task is tried again."""
+        rest: Order | None = order
+        while rest is not None and rest.open_tasks and not self._asked_to_stop:
+            events: list[Event] = []
+            ending = self._hear_out(rest, events.append)
+            rest = self._survivors(rest, events) if ending == "died" else None
+
+    def _hear_out(self, order: Order, note: Callable[[Event], None]) -> str:
         heard: queue.SimpleQueue[Event | Ending] = queue.SimpleQueue()
-        with self._lock:
-            if self._asked_to_stop:
-                return
-            self._handle = self._executor.submit(order, heard.put, heard.put)
+        self._handle = handle = self._executor.submit(order, heard.put, heard.put)
+        if self._asked_to_stop:
+            # The wish came while the worker was being started, and found no handle.
+            handle.ask("stop")
         while not isinstance(said := heard.get(), str):
+            if isinstance(said, Started | Finished | Failed):
+                note(said)
             self._tell(said)
-        with self._lock:
-            self._handle = None
+        self._handle = None
+        return said
+
+    def _survivors(self, order: Order, events: Iterable[Event]) -> Order | None:
+        """The order without its dead task and all upon it; None where no task had begun when it died."""
+        began = {event.task for event in events if isinstance(event, Started)}
+        failed = {event.task: event.died for event in events if isinstance(event, Failed)}
+        if not any(died and task in began for task, died in failed.items()):
+            return None
+        found = {event.task: Known.of(event.result) for event in events if isinstance(event, Finished)}
+        upon = order.upon(failed)
+        lost = {*failed, *(task.id for task in upon)}
+        for task in upon:
+            if task.id not in order.known:
+                below = next(need for need in order.needs(task) if need.id in lost)
+                self._tell(Failed(seq=0, task=task.id, reason=because_of(below)))
+        return order.without(failed, found)
 
     def _tell(self, event: Event) -> None:
         if isinstance(event, Finished | Failed):
             self._open.discard(event.task)
+        elif isinstance(event, Started):
+            self._open.add(event.task)
         self._failed = self._failed or isinstance(event, Failed)
         try:
             self._on_event(event.model_copy(update={"seq": next(self._numbers)}))
@@ -145,13 +171,14 @@ def run_plan(
 
     First every known result is told again as reused; then chain after chain runs in a worker of its own
     with so many threads, and the memory that its forecast asks for, within `memory_mb`. A chain that fails
-    or dies stops no other. Checkpoints and arrays go to `cache`.
+    stops no other; where a worker dies, a new one goes on with what does not stand on the task that died.
+    A known task that is found elsewhere than before is told anew, with all upon it. Checkpoints and arrays go to `cache`.
     """
     cache = cache.absolute()
     orders = tuple(
         Order(
             tasks=chain,
-            known=tuple(task.id for task in chain if task.id in known),
+            known={task.id: Known.of(known[task.id]) for task in chain if task.id in known},
             threads=threads,
             memory_mb=_memory_for(chain, memory_mb),
             shelf=str(shelf_folder(cache)),

@@ -4,7 +4,7 @@ import ctypes
 import sys
 import threading
 import time
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 
@@ -15,6 +15,7 @@ from plumbrule_core.documents.events import Event, Failed
 from plumbrule_core.documents.plan import Forecast, Settings, Task, TaskSpec
 from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.engine import LocalExecutor, Order
+from plumbrule_core.engine.order import Known
 
 FAKE_WORKER = Path(__file__).parent / "fake_worker.py"
 WATER = (("O", 0.0, 0.0, 0.117), ("H", 0.0, 0.757, -0.467), ("H", 0.0, -0.757, -0.467))
@@ -63,12 +64,17 @@ def task() -> Callable[..., Task]:
 
 @pytest.fixture
 def order(tmp_path: Path) -> Callable[..., Order]:
-    """`order(*tasks, known=())`."""
+    """`order(*tasks, known=())`; known tasks were found at the fake worker's energy, or as `stored` says."""
 
-    def make(*tasks: Task, known: Sequence[Task] = (), threads: int = 1) -> Order:
+    def make(
+        *tasks: Task,
+        known: Sequence[Task] = (),
+        stored: Mapping[str, Known] | None = None,
+        threads: int = 1,
+    ) -> Order:
         return Order(
             tasks=tasks,
-            known=tuple(t.id for t in known),
+            known={t.id: Known(energy=-76.0) for t in known} | dict(stored or {}),
             threads=threads,
             memory_mb=500.0,
             shelf=str(tmp_path / "shelf"),

@@ -131,7 +131,7 @@ def test_killed_again_and_again_at_random_moments_the_ladder_still_ends_at_the_p
             break
         for worker in psutil.Process().children():
             worker.kill()
-        assert run.wait(5)
+        assert run.wait(60)
         assert {e.task for e in heard.of(Started)}.isdisjoint(known)
         known = {**known, **found(heard)}
     run = start(heard, tasks, known)

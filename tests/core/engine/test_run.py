@@ -76,21 +76,102 @@ def test_where_all_is_known_no_worker_is_started(task, heard, start):
 
 
 def test_a_chain_that_dies_or_fails_stops_no_other(task, heard, start):
-    dead, waits = task("killed", name="a"), task("quick", name="a", chain="a")
-    bad = task("refuses", name="b")
-    good = task("quick", name="c")
-    run = start(heard, dead, waits, bad, good)
+    dead, bad, good = task("killed", name="a"), task("refuses", name="b"), task("quick", name="c")
+    run = start(heard, dead, bad, good)
     assert run.wait(30)
     assert run.outcome == "failed"
-    state = begin(Plan(tasks=(dead, waits, bad, good)))
+    assert states(heard, dead, bad, good) == ["died", "failed", "done"]
+
+
+def states(heard, *tasks):
+    state = begin(Plan(tasks=tasks))
     for event in heard.events:
         state = fold(state, event)
-    assert [state.tasks[t.id].state for t in (dead, waits, bad, good)] == [
-        "died",
-        "waiting",
-        "failed",
-        "done",
-    ]
+    return [state.tasks[one.id].state for one in tasks]
+
+
+def test_after_a_death_what_does_not_stand_on_the_dead_task_is_still_computed(task, heard, start):
+    ground = task("quick")
+    dead = task("killed", ground)
+    lost = task("slow", dead)
+    other = task("upon", ground)
+    run = start(heard, ground, dead, lost, other)
+    assert run.wait(30)
+    assert run.outcome == "failed"
+    assert states(heard, ground, dead, lost, other) == ["done", "died", "failed", "done"]
+    assert "the worker was killed (signal 9)" in heard.reasons()[0]
+    assert heard.reasons()[1] == "not run because water: killed/STO-3G failed"
+    assert [e.task for e in heard.of(Started)] == [ground.id, dead.id, other.id]
+    assert heard.of(Finished)[-1].result.energy == pytest.approx(-76.2)
+
+
+def test_each_death_costs_its_task_alone_and_a_failed_task_is_not_tried_again(task, heard, start):
+    bad, first, second, good = task("refuses"), task("killed"), task("segfaults"), task("quick")
+    run = start(heard, bad, first, second, good)
+    assert run.wait(30)
+    assert states(heard, bad, first, second, good) == ["failed", "died", "died", "done"]
+    assert [e.task for e in heard.of(Started)] == [bad.id, first.id, second.id, good.id]
+
+
+def test_stop_never_waits_for_a_worker_that_is_being_started(task, heard, start, fake):
+    begun, go_on = threading.Event(), threading.Event()
+
+    class Slow:
+        def submit(self, order, on_event, on_end=None):
+            begun.set()
+            assert go_on.wait(10)
+            return fake.submit(order, on_event, on_end)
+
+    run = start(heard, task("absorbed"), task("quick", name="ice"), executor=Slow())
+    assert begun.wait(10)
+    asking = threading.Thread(target=run.stop)
+    asking.start()
+    asking.join(1)
+    waited = asking.is_alive()
+    go_on.set()
+    assert not waited
+    assert run.wait(5)
+    assert run.outcome == "stopped"
+    assert heard.of(Finished) == []
+
+
+def test_a_known_task_that_ends_elsewhere_is_told_anew_and_what_stood_on_it_too(task, heard, start):
+    ground = task("quick")
+    above, top = task("upon", ground), task("slow", ground)
+    assert start(heard, ground, above).wait(30)
+    found = {e.task: e.result for e in heard.of(Finished)}
+    other = {
+        ground.id: found[ground.id].model_copy(update={"energy": -75.0}),
+        above.id: found[above.id].model_copy(update={"energy": -75.2, "stands_on": {"quick": -75.0}}),
+    }
+    again = type(heard)()
+    run = start(again, ground, above, top, known=other)
+    assert run.wait(30)
+    assert run.outcome == "done"
+    last = {e.task: e.result for e in again.of(Finished)}
+    assert {key: result.energy for key, result in last.items()} == pytest.approx(
+        {ground.id: -76.0, above.id: -76.2, top.id: -76.0}
+    )
+    words = (
+        "quick reached another solution than before: -76.000000 hartree in place of -75.000000 hartree; "
+        "what stands on it is computed anew"
+    )
+    assert last[ground.id].notes[0] == words
+    assert words in [e.text for e in again.of(Log)]
+    assert last[above.id].stands_on == {"quick": -76.0}
+    assert [e.task for e in again.of(Finished) if not e.reused] == [ground.id, above.id, top.id]
+
+
+def test_a_result_that_is_computed_anew_takes_along_what_stood_on_another_energy(task, heard, start):
+    ground = task("quick")
+    above = task("upon", ground)
+    assert start(heard, ground, above).wait(30)
+    stood = {e.task: e.result for e in heard.of(Finished)}[above.id]
+    for before, told in ((-75.0, [ground.id, above.id]), (-76.0, [ground.id])):
+        again = type(heard)()
+        known = {above.id: stood.model_copy(update={"stands_on": {"quick": before}})}
+        assert start(again, ground, above, known=known).wait(30)
+        assert [e.task for e in again.of(Finished) if not e.reused] == told
 
 
 def test_a_dead_worker_is_not_started_again_by_itself(task, heard, start):

@@ -147,6 +147,7 @@ def test_a_reading_that_breaks_does_not_cost_the_energy(fake, task, order, heard
     assert result.energy == -76.0
     assert "the readings could not be taken (ZeroDivisionError: division by zero)" in result.notes[0]
     assert result.notes[0] in [e.text for e in heard.of(Log)]
+    assert result.unchecked
 
 
 def test_prints_of_libraries_do_not_reach_the_events(fake, task, order, heard):

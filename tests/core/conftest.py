@@ -79,9 +79,10 @@ def task(xyz: str, rung: str, **options: Any) -> TaskSpec:
     rows = [line.split() for line in xyz.replace(";", "\n").strip().splitlines()]
     atoms = tuple(Atom(symbol=s, x=float(x), y=float(y), z=float(z)) for s, x, y, z in rows)
     charge, multiplicity = options.pop("charge", 0), options.pop("multiplicity", 1)
+    space = options.pop("space", None)
     species = Species(name="sample", atoms=atoms, charge=charge, multiplicity=multiplicity)
     settings = Settings(**{"basis": "cc-pVDZ", **options})
-    return TaskSpec(species=species, rung=rung, settings=settings, versions="test")
+    return TaskSpec(species=species, rung=rung, settings=settings, versions="test", space=space)
 
 
 def with_needs(*rungs: str) -> list[str]:

@@ -10,6 +10,7 @@ import pytest
 from plumbrule_core.documents.active_space import Space, SpaceRequest
 from plumbrule_core.documents.plan import TaskSpec
 from plumbrule_core.rungs import RUNGS
+from plumbrule_core.rungs.active_space import ActiveSpace
 from plumbrule_core.rungs.hartree_fock import core_orbitals
 from plumbrule_core.rungs.molecule import empty_mean_field
 from plumbrule_core.rungs.protocol import Bench, Given, Outcome
@@ -18,7 +19,7 @@ from plumbrule_core.rungs.tccsd import TCCSD
 from plumbrule_core.rungs.tccsd_t import TCCSDT
 
 TIGHT = {"cc_tolerance": 1e-10, "cc_residual": 1e-8}
-RUNG = {"TCCSD": TCCSD(), "TCCSD(T)": TCCSDT()}
+RUNG = {rung.name: rung for rung in (ActiveSpace(), TCCSD(), TCCSDT())}
 
 
 class KeptShelf:
@@ -42,6 +43,7 @@ class Scene:
     ear: Any
     xyz: str
     settings: dict[str, Any]
+    guess: str = "minao"
     bench: Bench = field(default_factory=Bench)
     shelves: dict[str, KeptShelf] = field(default_factory=dict)
     ears: dict[str, Any] = field(default_factory=dict)
@@ -50,7 +52,7 @@ class Scene:
     def __post_init__(self) -> None:
         spec = self.spec("HF")
         field = empty_mean_field(self.given(spec))
-        field.conv_tol = 1e-12
+        field.conv_tol, field.init_guess = 1e-12, self.guess
         field.kernel()
         self.bench.mean_field, self.bench.frozen = field, core_orbitals(spec, field)
 
@@ -85,9 +87,9 @@ class Scene:
 def scene(make_task, ear):
     """`scene(xyz, basis=...)`: all electrons correlated, tight, unless said otherwise."""
 
-    def make(xyz: str, kind: str = "RHF", **settings: Any) -> Scene:
+    def make(xyz: str, kind: str = "RHF", guess: str = "minao", **settings: Any) -> Scene:
         chosen = {"core": "all", "reference": kind, **TIGHT, **settings}
-        return Scene(make_task=make_task, ear=ear, xyz=xyz, settings=chosen)
+        return Scene(make_task=make_task, ear=ear, xyz=xyz, settings=chosen, guess=guess)
 
     return make
 

@@ -26,6 +26,7 @@ def test_a_rung_reproduces_its_published_energies(name, value, climb):
         core=value.core,
         charge=value.charge,
         multiplicity=value.multiplicity,
+        space=value.space,
     )
     assert climbed.energy(name) == pytest.approx(value.energy, abs=value.atol), value.source
 

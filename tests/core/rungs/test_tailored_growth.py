@@ -132,3 +132,28 @@ def test_the_size_taken_is_the_chosen_one_where_that_did_not_converge(stretched_
     at.compute("TCCSD")
     at.bench.tailored = (replace(at.bench.tailored[0], converged=False), at.bench.tailored[1])
     assert size_taken(at.bench, None).space == at.bench.space
+
+
+CHAIN = ("Active space", "TCCSD", "TCCSD(T)")
+
+
+def test_the_space_that_was_looked_for_is_tailored_and_followed(scene):
+    """Valence orbitals are not canonical: the judge is the library's full CI at the largest size."""
+    at = scene("N 0 0 0; N 0 0 1.6", basis="STO-3G", core="frozen")
+    outcomes = {rung: at.compute(rung) for rung in CHAIN}
+    assert outcomes["TCCSD"].growth[0].energies["CASCI"] >= outcomes["TCCSD"].growth[-1].energies["CASCI"]
+    chosen = next(p for p in outcomes["TCCSD"].growth if p.orbitals == at.bench.space.orbitals)
+    assert chosen.energies["CASCI"] == pytest.approx(outcomes["Active space"].energy, abs=1e-8)
+    everything = at.choose(*at.everything)
+    everything.bench.solved = None
+    exact = everything.compute("TCCSD").energy
+    assert abs(outcomes["TCCSD"].energy - exact) < 0.02
+    assert outcomes["TCCSD(T)"].energy <= outcomes["TCCSD"].energy
+
+
+def test_an_open_shell_climbs_from_uhf_to_tailored_triples(scene):
+    at = scene("O 0 0 0; H 0 0 1.6", "UHF", basis="6-31G", core="frozen", multiplicity=2)
+    outcomes = {rung: at.compute(rung) for rung in CHAIN}
+    assert outcomes["TCCSD"].converged
+    assert outcomes["TCCSD"].energy < outcomes["Active space"].energy
+    assert outcomes["TCCSD(T)"].energy < outcomes["TCCSD"].energy

@@ -90,11 +90,13 @@ def cyclobutadiene(carbon: tuple[float, float], hydrogen: tuple[float, float]) -
 
 
 @pytest.mark.slow
+@pytest.mark.filterwarnings("ignore:remove_linear_dep_:DeprecationWarning")
 def test_the_barrier_of_cyclobutadiene(scene):
     # T15, own: 9.59 and 3.84 kcal/mol; with the active amplitudes left in the triples it would be -35.6.
     found = {}
     for name, shape in (("rectangle", RECTANGLE), ("square", SQUARE)):
-        at = scene(cyclobutadiene(*shape), core="frozen").choose(14, 15)
+        # From the Huckel guess RHF finds the lower, symmetry-broken solution of the square.
+        at = scene(cyclobutadiene(*shape), core="frozen", guess="huckel").choose(14, 15)
         found[name] = [at.compute(rung).energy for rung in ("TCCSD", "TCCSD(T)")]
     assert found["rectangle"] == pytest.approx([-154.2189578565, -154.2426686296], abs=2e-6)
     barrier = 627.509474 * (np.array(found["square"]) - found["rectangle"])

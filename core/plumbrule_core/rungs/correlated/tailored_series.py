@@ -15,7 +15,7 @@ from plumbrule_core.correlation.integrals import problem_from
 from plumbrule_core.correlation.protocol import Array, Problem, Solved
 from plumbrule_core.correlation.solvers import choose
 from plumbrule_core.correlation.tailored import Tailored, hold
-from plumbrule_core.documents.active_space import Space
+from plumbrule_core.documents.active_space import Space, SpaceRequest
 from plumbrule_core.errors import PlumbruleError
 from plumbrule_core.rungs.correlated.iterations import iterate
 from plumbrule_core.rungs.correlated.reference import correlated_reference, fitting_of, is_unrestricted
@@ -170,8 +170,8 @@ class Series:
             return bench.solved
         problem = _problem(self.frame, space)
         self.tell.note(f"solving the active space {space.label}")
-        asked = "auto" if self.given.spec.space is None else self.given.spec.space.solver
-        return choose(asked, problem, self.given.memory_mb).solve(
+        asked = self.given.spec.space or SpaceRequest()
+        return choose(asked.solver, problem, self.given.memory_mb, asked.bond_dimension).solve(
             problem,
             Staged(self.tell, f"active space {space.label}"),
             threads=self.given.threads,

@@ -1,10 +1,10 @@
 """What tailoring costs: TCCSD of butadiene/cc-pVDZ, space (4,4), against CCSD and the active space alone.
 
 All run in one process on one thread, on the same integrals, one after the other, the order turned round from
-repeat to repeat; the best of `--repeats` counts. TCCSD starts from MP2 and writes checkpoints as CCSD does, and
-solves its active space within its own time. A series of growing spaces is timed too. Prints the seconds
-(processor time), the iterations, and two ratios: TCCSD / (CCSD + active space) as they ran, and the same where
-CCSD is given as many iterations as TCCSD took; exits 1 where either is above `--limit`.
+repeat to repeat; the best of `--repeats` counts. TCCSD starts from MP2 and writes checkpoints as CCSD does,
+and solves its active space within its own time. A series of growing spaces is timed too. Prints the seconds
+(processor time), the iterations, and two ratios: TCCSD / (CCSD + active space) as they ran, and the same
+where CCSD is given as many iterations as TCCSD took; exits 1 where either is above `--limit`.
 
     python tests/benchmarks/tailored_ratio.py [--repeats 3] [--limit 1.1]
 """

@@ -2,6 +2,7 @@
 
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
+from types import MappingProxyType
 
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Answer, Compared, Evidence, Finding, Judgement, SpeciesJudgement
@@ -23,17 +24,27 @@ def check(brief: Brief, plan: Plan, machine: Machine) -> tuple[Finding, ...]:
     return ordered(run(RULES, ("before", "always"), Case(brief, plan, {}, machine)))
 
 
-def judge(brief: Brief, plan: Plan, results: Mapping[str, Result]) -> Judgement:
-    """Everything that the results say, task identity to result; some may be missing while the plan runs."""
-    case = Case(brief, plan, results)
+def judge(
+    brief: Brief, plan: Plan, results: Mapping[str, Result], failed: Mapping[str, str] = MappingProxyType({})
+) -> Judgement:
+    """Everything that the results say, task identity to result; some may be missing while the plan runs.
+
+    `failed`: identity of each task that will have no result, as it failed or needs one that did, to the
+    reason.
+    """
+    planned = {task.id for task in plan.tasks} - set(results)
+    case = Case(brief, plan, results, failed={key: why for key, why in failed.items() if key in planned})
     values, unlike = _ladder(case)
     findings = [*unlike, *run(RULES, ("after", "always"), case)] if results else []
     best = best_of(values, findings)
     lines = budget(case, best, values) if best and not stopped(findings, best.rung) else ()
     answer = _answer(case, best, combined(lines), findings)
+    standing = None
     if best and answer:
         standing = Standing(best.rung, answer.value, answer.uncertainty, lines[0].cause if lines else "")
-        findings += run(RULES, ("answer",), replace(case, standing=standing))
+    later = run(RULES, ("answer",), replace(case, standing=standing))
+    findings = [*(one for one in later if one.code == "task-failed"), *findings]
+    findings += [one for one in later if one.code != "task-failed"]
     told = ordered(findings, best.rung if best else "")
     return Judgement(
         verdict=overall(case, best, answer, told),

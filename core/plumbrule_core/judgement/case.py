@@ -2,7 +2,7 @@
 
 import math
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 
 from plumbrule_core.basis_sets import Basis, find, frozen_orbitals
@@ -131,6 +131,8 @@ class Case:
     results: Mapping[str, Result]
     machine: Machine | None = None
     standing: Standing | None = None
+    failed: Mapping[str, str] = field(default_factory=dict)
+    """Identity of each task that failed, or was not run because another did, to the reason."""
 
     @property
     def recipe(self) -> Recipe:
@@ -239,8 +241,8 @@ class Case:
 
     @cached_property
     def pending(self) -> int:
-        """How many tasks of the plan have no result."""
-        return sum(task.id not in self.results for task in self.plan.tasks)
+        """How many tasks of the plan have no result and can still get one."""
+        return sum(task.id not in self.results and task.id not in self.failed for task in self.plan.tasks)
 
     @cached_property
     def _atoms(self) -> Mapping[str, SpeciesView]:

@@ -57,7 +57,7 @@ def overall(
     severity = _with_lost_rungs(case, best, findings, worst(touching))
     reasons = tuple(dict.fromkeys(one.headline for one in telling))
     if severity == "note":
-        return _calm(case, answer)
+        return _calm(case, best, answer)
     headline = reasons[0] if reasons else f"A rung above {best.rung} is not to be used."
     return Verdict(level=LEVELS[severity], headline=_led(severity, headline), reasons=reasons or (headline,))
 
@@ -79,8 +79,8 @@ _PLAIN = {"One", "The", "An", "A", "All"}
 """First words of headlines that lose their capital inside a sentence."""
 
 
-def _calm(case: Case, answer: Answer) -> Verdict:
-    fine = _fine(case)
+def _calm(case: Case, best: LadderValue, answer: Answer) -> Verdict:
+    fine = _fine(case, best)
     if case.pending:
         return Verdict(level="unknown", headline=f"So far nothing speaks against it; {_left(case)}.")
     if answer.uncertainty is None:
@@ -95,7 +95,9 @@ def _calm(case: Case, answer: Answer) -> Verdict:
     return Verdict(level="sound", headline=f"Sound: {held}.", reasons=(_capital(fine) + ".",))
 
 
-def _fine(case: Case) -> str:
+def _fine(case: Case, best: LadderValue) -> str:
+    if not any(view.inexact(best.rung) for view in case.views):
+        return f"{best.rung} is exact where no more than two electrons are correlated"
     return f"one determinant describes {case.species[0].name if len(case.species) == 1 else 'every molecule'}"
 
 
@@ -113,6 +115,9 @@ def _without_answer(case: Case, findings: Sequence[Finding]) -> Verdict:
     if hopeless:
         reasons = tuple(dict.fromkeys(one.headline for one in hopeless))
         return Verdict(level="do not rely on it", headline=_led("stop", reasons[0]), reasons=reasons)
+    if case.failed:
+        reasons = tuple(one.headline for one in findings if one.code == "task-failed")
+        return Verdict(level="unknown", headline=reasons[0], reasons=reasons)
     if not case.results:
         return Verdict(level="unknown", headline="Nothing is known yet.")
     return Verdict(level="unknown", headline=f"There is no answer yet; {_left(case)}.")
@@ -125,17 +130,21 @@ def _covers(case: Case, finding: Finding) -> bool:
 def of_species(case: Case, view: SpeciesView, rung: str | None, findings: Sequence[Finding]) -> Verdict:
     """The verdict on one species: what is said of it, for the rung the answer stands on."""
     if not view.results:
-        return Verdict(level="unknown", headline="Nothing is known yet.")
+        lost = next((f.headline for f in findings if (f.species, f.code) == (view.name, "task-failed")), None)
+        return Verdict(level="unknown", headline=lost or "Nothing is known yet.")
     own = [one for one in findings if one.species == view.name and (rung is None or applies(one, rung))]
     severity = worst(own)
     reasons = tuple(dict.fromkeys(one.headline for one in own if one.severity != "note"))
     if severity != "note":
         return Verdict(level=LEVELS[severity], headline=_led(severity, reasons[0]), reasons=reasons)
     if any(
-        task.id not in case.results
+        task.id not in case.results and task.id not in case.failed
         for task in case.plan.tasks
         if task.spec.species.content == view.species.content
     ):
         return Verdict(level="unknown", headline="So far nothing speaks against it.")
     calm = f"One determinant describes {view.name}."
+    if rung is not None and not view.inexact(rung):
+        calm = f"{rung} is exact for {view.name}, which has no more than two correlated electrons."
+        return Verdict(level="sound", headline=f"Sound: {calm}", reasons=(calm,))
     return Verdict(level="sound", headline=f"Sound: {calm[0].lower()}{calm[1:]}", reasons=(calm,))

@@ -2,6 +2,7 @@
 
 from collections.abc import Iterator
 
+from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.findings import Evidence, Finding, Remedy
 from plumbrule_core.documents.plan import Task
 from plumbrule_core.judgement.case import Case
@@ -34,8 +35,7 @@ def _exceeds(case: Case, task: Task, what: str, needed: float, there: float) -> 
         severity="stop",
         species=task.spec.species.name,
         rungs=(task.spec.rung,),
-        headline=f"{task.label} needs about {needed / 1000:.1f} GB of {what}; {there / 1000:.1f} GB are "
-        "free.",
+        headline=f"{task.label} needs about {memory(needed)} of {what}; {memory(there)} are free.",
         consequence="It would fail, or bring the computer to a halt.",
         evidence=(Evidence(reading=what, value=needed, threshold=there, unit="MB", source=SOURCE),),
         remedies=cheaper(case, task),

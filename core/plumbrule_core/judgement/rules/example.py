@@ -59,6 +59,8 @@ class Example:
     recipe: Mapping[str, Any] = field(default_factory=dict)
     forecast: Forecast = LIGHT
     standing: Standing | None = None
+    failed: Mapping[str, str] = field(default_factory=dict)
+    """Rungs of every molecule that failed, each with the reason."""
 
 
 def measured(**readings: ReadingValue) -> Example:
@@ -87,7 +89,9 @@ def case_of(example: Example) -> Case:
         for rung in brief.recipe.rungs
     )
     results = {task.id: _result(task, found) for task in tasks if (found := _molecule(task, example))}
-    return Case(brief, Plan(tasks=tasks), results, MACHINE, example.standing)
+    failed = {task.id: why for task in tasks if (why := example.failed.get(task.spec.rung))}
+    kept = {key: result for key, result in results.items() if key not in failed}
+    return Case(brief, Plan(tasks=tasks), kept, MACHINE, example.standing, failed)
 
 
 def _known(name: str) -> str:

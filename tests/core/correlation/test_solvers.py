@@ -232,6 +232,21 @@ def test_a_space_out_of_reach_is_refused_with_the_reason_of_each_solver() -> Non
         choose("FCI", made(2, 1, 1), 100)
 
 
+def test_what_a_library_would_get_wrong_is_refused() -> None:
+    """Its selected CI gives energies below the exact one without beta electrons (own measurement)."""
+    assert "both spins" in SelectedCI().reach(made(4, 2, 0), 1000)
+    assert "one orbital" in DMRG().reach(made(1, 1, 0), 1000)
+    assert not Exact().reach(made(1, 1, 0), 1000)
+
+
+def test_electrons_of_one_spin_alone_are_solved_exactly(listener: Any) -> None:
+    """One electron: the lowest eigenvalue of the one-electron matrix (closed form)."""
+    one = np.array([[0.3, -0.2, 0.1], [-0.2, -0.5, 0.4], [0.1, 0.4, 0.2]])
+    problem = Problem(one=one, two=np.zeros((3,) * 4), alpha=1, beta=0, multiplicity=2)
+    solved = solve(Exact(), problem, listener)
+    assert solved.energy == pytest.approx(np.linalg.eigvalsh(one)[0], abs=1e-12)
+
+
 def test_the_extrapolation_is_a_straight_line_to_no_discarded_weight() -> None:
     limit, error = extrapolate(np.array([4e-6, 2e-6]), np.array([-1.00, -1.01]))
     assert limit == pytest.approx(-1.02)

@@ -60,6 +60,8 @@ class DMRG:
 
     def reach(self, problem: Problem, memory_mb: float) -> str:
         """Beyond reach where the states would not fit the memory."""
+        if problem.size < 2:
+            return "one orbital is no chain to sweep along"
         if problem.size > MAX_ORBITALS:
             return f"{problem.size} orbitals are more than the {MAX_ORBITALS} that DMRG is offered for"
         needed = RESTING_MB + BYTES_PER_WIDTH * 1e-6 * (self.bond_dimension * problem.size) ** 2

@@ -46,9 +46,12 @@ class SelectedCI:
         return ""
 
     def reach(self, problem: Problem, memory_mb: float) -> str:
-        """Orbitals of both spins must be the same, and the integrals fit the memory."""
+        """Orbitals of both spins must be the same, both be filled, and the integrals fit the memory."""
         if problem.unrestricted:
             return "selected CI takes orbitals shared by both spins alone"
+        if not problem.beta:
+            # The library's selection divides by the number of beta electrons.
+            return "selected CI needs active electrons of both spins"
         if problem.size > MAX_ORBITALS:
             return f"{problem.size} orbitals are more than the {MAX_ORBITALS} that selected CI can take"
         needed = 4 * 8e-6 * problem.size**4

@@ -1,12 +1,13 @@
 """How the window looks: a palette for light, one for dark, one accent. Every colour comes from here."""
 
-from dataclasses import dataclass
+from dataclasses import asdict, dataclass
 from typing import Literal
 
 from PySide6.QtGui import QColor, QGuiApplication, QPalette
 from PySide6.QtWidgets import QApplication, QWidget
 
 from plumbrule_core.documents.findings import Level, Severity
+from plumbrule_desktop.sheet import sheet
 
 Scheme = Literal["system", "light", "dark"]
 
@@ -121,13 +122,11 @@ def palette_of(c: Colours) -> QPalette:
 
 def wear(app: QApplication, scheme: Scheme) -> None:
     """Dress the whole application; `system` follows the desktop where it says what it wants."""
-    from plumbrule_desktop.sheet import sheet
-
     dark = scheme == "dark" or (scheme == "system" and system_is_dark(app))
     chosen = DARK if dark else LIGHT
     app.setStyle("Fusion")
     app.setPalette(palette_of(chosen))
-    app.setStyleSheet(sheet(chosen, "dark" if dark else "light"))
+    app.setStyleSheet(sheet(asdict(chosen), "dark" if dark else "light"))
 
 
 def system_is_dark(app: QApplication) -> bool:

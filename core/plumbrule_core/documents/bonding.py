@@ -3,7 +3,7 @@
 import math
 from collections.abc import Iterable, Sequence
 
-from plumbrule_core.documents.species import Atom, Species
+from plumbrule_core.documents.species import Atom
 from plumbrule_core.elements import ELEMENTS
 
 BOND_TOLERANCE = 1.3
@@ -42,8 +42,3 @@ def pieces(count: int, links: Iterable[Bond]) -> tuple[tuple[int, ...], ...]:
     for atom, place in enumerate(home):
         found.setdefault(place, []).append(atom)
     return tuple(tuple(piece) for piece in found.values())
-
-
-def unbonded_pieces(species: Species) -> tuple[tuple[int, ...], ...]:
-    """The pieces of a species that no bond joins; one piece for an ordinary molecule."""
-    return pieces(len(species.atoms), bonds(species.atoms))

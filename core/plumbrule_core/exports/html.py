@@ -5,6 +5,7 @@ from collections.abc import Callable, Iterable, Mapping
 from typing import Any
 
 from plumbrule_core import __version__
+from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.species import Species, spin_words
 from plumbrule_core.exports import figures, words
 from plumbrule_core.exports.checks import Check, checks_of, unfinished
@@ -22,7 +23,7 @@ FILTERS: Mapping[str, Callable[..., str]] = {
     "hartree": words.hartree,
     "reading": words.reading,
     "duration": words.duration,
-    "memory": words.memory,
+    "memory": memory,
     "bar": bar,
 }
 

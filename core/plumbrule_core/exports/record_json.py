@@ -5,6 +5,7 @@ from typing import Any
 import numpy as np
 
 from plumbrule_core import __version__
+from plumbrule_core.documents.amounts import gigabytes
 from plumbrule_core.documents.findings import Finding
 from plumbrule_core.documents.results import Result
 from plumbrule_core.documents.species import Species
@@ -123,7 +124,7 @@ def _provenance(record: Record) -> Data:
     machine = record.machine
     return _present(
         versions=dict(record.versions),
-        machine={"cores": machine.cores, "memory_gb": round(machine.memory_mb / 1024, 1)},
+        machine={"cores": machine.cores, "memory_gb": gigabytes(machine.memory_mb)},
         settings=[*levels.values()][-1] if levels else {},
         settings_by_basis=levels if len(levels) > 1 else {},
         recipe=record.brief.recipe.to_data(),

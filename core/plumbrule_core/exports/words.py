@@ -104,8 +104,3 @@ def duration(seconds: float) -> str:
     if seconds < 120:
         return f"{seconds:.0f} s"
     return f"{seconds / 60:.0f} min" if seconds < 7200 else f"{seconds / 3600:.1f} h"
-
-
-def memory(megabytes: float) -> str:
-    """`120 MB`, `1.2 GB`."""
-    return f"{megabytes:.0f} MB" if megabytes < 1000 else f"{megabytes / 1024:.1f} GB"

@@ -129,14 +129,6 @@ def twisted_double_bonds(species: Species) -> tuple[Twist, ...]:
     return tuple(twists)
 
 
-def isolated_atoms(species: Species) -> tuple[int, ...]:
-    """Atoms that no bond reaches, in a species of several atoms."""
-    if len(species.atoms) == 1:
-        return ()
-    bonded = {atom for bond in bonds(species.atoms) for atom in bond}
-    return tuple(at for at in range(len(species.atoms)) if at not in bonded)
-
-
 def _distances(atoms: Sequence[Atom]) -> tuple[np.ndarray, np.ndarray]:
     """The distance of each two atoms and the sum of their covalent radii, atoms by atoms, in angstrom."""
     places = np.array([(a.x, a.y, a.z) for a in atoms])

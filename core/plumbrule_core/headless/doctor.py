@@ -11,6 +11,7 @@ from pathlib import Path
 from typing import Any
 
 from plumbrule_core import __version__
+from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.events import Event, Failed
 from plumbrule_core.documents.plan import Machine
@@ -149,7 +150,7 @@ def _text(here: Machine, trial: Trial, problems: list[str]) -> str:
     rows += [(name, version, OPTIONAL[name]) for name, version in _engines().items()]
     lines = [
         table(("what", "version", "for"), rows, words_first=3),
-        f"cores {here.cores}, memory {here.memory_mb / 1024:.1f} GB, free disk {here.disk_mb / 1024:.1f} GB "
+        f"cores {here.cores}, memory {memory(here.memory_mb)}, free disk {memory(here.disk_mb)} "
         f"in {cache_folder()}",
         f"speed {1 / here.seconds_per_gigaflop:.1f} gigaflop a second and core; a worker starts in "
         f"{here.start_seconds:.1f} s",

@@ -5,9 +5,9 @@ from collections.abc import Sequence
 from typing import Any
 
 from plumbrule_core import __version__, judgement
+from plumbrule_core.documents.amounts import gigabytes, memory
 from plumbrule_core.documents.findings import Finding
 from plumbrule_core.documents.plan import Forecast, Machine, Task
-from plumbrule_core.exports import words
 from plumbrule_core.exports.record_json import finding_data
 from plumbrule_core.headless.asked import check_output, planned, write_json
 from plumbrule_core.headless.endings import ANSWERED, print_out, say
@@ -44,8 +44,8 @@ def machine_data(machine: Machine) -> dict[str, Any]:
     """What the computer offers, in the words of the JSON output."""
     return {
         "cores": machine.cores,
-        "memory_gb": round(machine.memory_mb / 1024, 1),
-        "disk_gb": round(machine.disk_mb / 1024, 1),
+        "memory_gb": gigabytes(machine.memory_mb),
+        "disk_gb": gigabytes(machine.disk_mb),
     }
 
 
@@ -63,7 +63,7 @@ def exceeding(forecast: Forecast | None, memory_mb: float, disk_mb: float) -> tu
         return ()
     wanted = (("memory", forecast.memory_mb, memory_mb), ("disk", forecast.disk_mb, disk_mb))
     return tuple(
-        f"the forecast needs {words.memory(needs)} of {what}, but there is {words.memory(there)}"
+        f"the forecast needs {memory(needs)} of {what}, but there is {memory(there)}"
         for what, needs, there in wanted
         if needs > there
     )

@@ -3,6 +3,7 @@
 import argparse
 from pathlib import Path
 
+from plumbrule_core.documents.amounts import MB_PER_GB, memory
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.plan import Forecast, Machine, Plan, Task
 from plumbrule_core.exports import Record, words
@@ -51,10 +52,10 @@ def _threads(asked: int | None, here: Machine) -> int:
 
 
 def _memory_mb(asked_gb: float | None, here: Machine) -> float:
-    if asked_gb is not None and asked_gb * 1024 > here.memory_mb:
-        there = words.memory(here.memory_mb)
+    if asked_gb is not None and asked_gb * MB_PER_GB > here.memory_mb:
+        there = memory(here.memory_mb)
         say(f"--memory: {asked_gb:g} GB is more than the {there} of this machine; {there} are used")
-    return min(asked_gb * 1024 if asked_gb is not None else here.memory_mb, here.memory_mb)
+    return min(asked_gb * MB_PER_GB if asked_gb is not None else here.memory_mb, here.memory_mb)
 
 
 def _number_of(session: Session, brief: Brief) -> int:
@@ -90,8 +91,8 @@ def _run(
     total = _sum(left)
     if total is not None:
         about, most = words.duration(total.seconds), words.duration(total.seconds_high)
-        memory = words.memory(total.memory_mb)
-        say(f"{len(left)} calculations: about {about}, up to {most}, {memory} of memory")
+        needed = memory(total.memory_mb)
+        say(f"{len(left)} calculations: about {about}, up to {most}, {needed} of memory")
     with progress_for(plan) as progress, stop_on_signals() as stop:
         run = session.run(number, progress.heard, threads=threads, memory_mb=memory_mb)
         asked = False

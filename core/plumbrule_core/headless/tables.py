@@ -3,6 +3,7 @@
 import textwrap
 from collections.abc import Iterator, Sequence
 
+from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.plan import Forecast, Task
 from plumbrule_core.exports import Record, words
 from plumbrule_core.exports.facts import energies_of, sentence_of, species_of
@@ -109,6 +110,6 @@ def _price(forecast: Forecast) -> tuple[str, str, str, str, str]:
         words.duration(forecast.seconds),
         words.duration(forecast.seconds_low),
         words.duration(forecast.seconds_high),
-        words.memory(forecast.memory_mb),
-        words.memory(forecast.disk_mb),
+        memory(forecast.memory_mb),
+        memory(forecast.disk_mb),
     )

@@ -6,11 +6,12 @@ from typing import Any
 
 from PySide6.QtCore import QAbstractItemModel, QModelIndex, QObject, QPersistentModelIndex, Qt
 
+from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.plan import Plan, Task
 from plumbrule_core.documents.run_state import Progressing, RunState, TaskState
 from plumbrule_desktop.state.progress import ANSWERED, Stopwatch, is_slipping, share
 from plumbrule_desktop.state.task_words import state_words, trouble_words
-from plumbrule_desktop.state.wording import duration, memory
+from plumbrule_desktop.state.wording import duration
 
 Index = QModelIndex | QPersistentModelIndex
 HEADER = ("Task", "State", "Progress", "Time / forecast", "Memory / forecast")

@@ -4,6 +4,7 @@ from PySide6.QtCore import Qt
 from PySide6.QtGui import QTextCursor
 from PySide6.QtWidgets import QPlainTextEdit, QTabWidget, QVBoxLayout, QWidget
 
+from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.plan import Task
 from plumbrule_core.documents.run_state import TaskState
 from plumbrule_desktop.models.grid import GridModel
@@ -11,7 +12,7 @@ from plumbrule_desktop.models.readings import task_readings
 from plumbrule_desktop.plots.panel import PlotPanel, numbers_table
 from plumbrule_desktop.plots.series import convergence
 from plumbrule_desktop.state.task_words import state_words, trouble_words
-from plumbrule_desktop.state.wording import duration, memory
+from plumbrule_desktop.state.wording import duration
 from plumbrule_desktop.widgets.card import Card, label
 
 

@@ -2,6 +2,7 @@
 
 import math
 
+from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.findings import Answer
 from plumbrule_core.documents.plan import Forecast
 from plumbrule_core.units import EnergyUnit
@@ -18,11 +19,6 @@ def duration(seconds: float) -> str:
     if seconds < 36 * 3600:
         return f"{seconds / 3600:.2g} h"
     return f"{seconds / 86400:.2g} days"
-
-
-def memory(megabytes: float) -> str:
-    """A size in MB or GB."""
-    return f"{megabytes:.0f} MB" if megabytes < 1000 else f"{megabytes / 1000:.1f} GB"
 
 
 def forecast_words(forecast: Forecast) -> str:

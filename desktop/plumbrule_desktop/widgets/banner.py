@@ -1,7 +1,7 @@
 """Sentences above the pages: what stays true (read-only, damage) and what has just happened."""
 
 from PySide6.QtCore import QTimer, Signal
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QPushButton, QToolButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QToolButton, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.findings import Severity
 from plumbrule_desktop.widgets.card import label
@@ -25,7 +25,6 @@ class Strip(QFrame):
         row.setSpacing(10)
         row.addWidget(SeverityMark(severity))
         row.addWidget(label(text), 1)
-        self._row = row
         if not lasting:
             close = QToolButton()
             close.setText("\u2715")
@@ -34,12 +33,6 @@ class Strip(QFrame):
             close.setToolTip("Put this message away")
             close.clicked.connect(self.dismissed)
             row.addWidget(close)
-
-    def add_button(self, text: str) -> QPushButton:
-        """An action beside the sentence."""
-        button = QPushButton(text)
-        self._row.insertWidget(self._row.count() - 1, button)
-        return button
 
 
 class Banner(QWidget):

@@ -125,7 +125,7 @@ def test_the_outcome_keeps_the_layout_of_the_contract(record):
     assert two["verdict"] == {"level": "take care", "headline": "", "reasons": ["T1 is large."]}
     assert data["findings"][0]["remedies"] == ["Add the next basis set"]
     assert data["tasks"][0]["trace"] == [[1, -1.0], [2, -1.1, 1e-6]]
-    assert data["provenance"]["machine"] == {"cores": 2, "memory_gb": 24.0}
+    assert data["provenance"]["machine"] == {"cores": 2, "memory_gb": 24.6}
 
 
 def test_a_file_is_replaced_whole_or_not_at_all(tmp_path, monkeypatch):

@@ -9,7 +9,6 @@ from plumbrule_core.geometry import from_smiles, read_text
 from plumbrule_core.geometry.shape import (
     clashes,
     in_bohr_as_angstrom,
-    isolated_atoms,
     looks_like_bohr,
     stretched_bonds,
     twisted_double_bonds,
@@ -240,12 +239,6 @@ def test_a_twisted_nitrogen_double_bond_is_seen_and_an_untwisted_one_is_not():
 def test_rings_turned_about_a_single_bond_are_no_twisted_double_bond():
     biphenyl = from_smiles("Cc1ccccc1c1ccccc1C")
     assert twisted_double_bonds(biphenyl) == ()
-
-
-def test_atoms_that_no_bond_reaches_are_named():
-    assert isolated_atoms(read_text("H 0 0 0\nH 0 0 0.74\nHe 0 0 5\n")[0]) == (2,)
-    assert isolated_atoms(from_smiles("[He]")) == ()
-    assert isolated_atoms(from_smiles("O")) == ()
 
 
 def test_atoms_in_one_place_break_no_measure():

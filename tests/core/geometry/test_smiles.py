@@ -2,7 +2,7 @@
 
 import pytest
 
-from plumbrule_core.documents.bonding import bonds, distance, unbonded_pieces
+from plumbrule_core.documents.bonding import bonds, distance, pieces
 from plumbrule_core.errors import Unreadable
 from plumbrule_core.geometry import from_smiles, read_file, read_text
 
@@ -54,9 +54,9 @@ def test_bond_lengths_are_those_of_real_molecules_as_well_as_a_force_field_can()
         assert distance(atoms[0], atoms[1]) == pytest.approx(length, abs=0.03)
 
 
-def test_unbonded_pieces_stand_side_by_side_and_stay_apart():
+def test_pieces_that_no_bond_joins_stand_side_by_side_and_stay_apart():
     species = from_smiles("O.O.CO")
-    assert len(unbonded_pieces(species)) == 3
+    assert len(pieces(len(species.atoms), bonds(species.atoms))) == 3
     assert len(bonds(species.atoms)) == 2 + 2 + 5
 
 

@@ -2,7 +2,7 @@ import pytest
 
 from plumbrule_core.documents.findings import Answer
 from plumbrule_core.documents.plan import Forecast
-from plumbrule_desktop.state.wording import answer_words, duration, forecast_details, forecast_words, memory
+from plumbrule_desktop.state.wording import answer_words, duration, forecast_details, forecast_words
 
 
 @pytest.mark.parametrize(
@@ -17,11 +17,6 @@ from plumbrule_desktop.state.wording import answer_words, duration, forecast_det
 )
 def test_a_time_is_said_as_people_say_it(seconds: float, words: str) -> None:
     assert duration(seconds) == words
-
-
-def test_a_size_from_a_thousand_megabytes_on_is_said_in_gigabytes() -> None:
-    assert memory(240) == "240 MB"
-    assert memory(1200) == "1.2 GB"
 
 
 def test_a_forecast_names_time_and_memory_and_its_details_name_the_range() -> None:

@@ -16,6 +16,8 @@ class PageStack(QStackedWidget):
 
     page_wanted = Signal(str)
     """A page asks for another one to be shown."""
+    demo_wanted = Signal()
+    """A page asks for the demo."""
 
     def __init__(self, desk: Desk, three_d: ThreeD, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -31,9 +33,9 @@ class PageStack(QStackedWidget):
         if name not in self.made:
             page = _MAKE[name](self)
             self.made[name] = page
-            asks = getattr(page, "page_wanted", None)
-            if asks is not None:
-                asks.connect(self.page_wanted)
+            for asked in ("page_wanted", "demo_wanted"):
+                if hasattr(page, asked):
+                    getattr(page, asked).connect(getattr(self, asked))
             self._put(page, PAGES.index(name), self._empty.pop(name))
         return self.made[name]
 

@@ -53,7 +53,8 @@ class Window(QMainWindow):
         self.segments = Segments((name.capitalize() for name in PAGES), "Pages")
         self.stack = PageStack(self.desk, self.three_d)
         self.stack.page_wanted.connect(lambda name: self.show_page(PAGES.index(name)))
-        self.leaving = Leaving(self)
+        self.stack.demo_wanted.connect(lambda: self.leaving.replace(self.desk.open_demo))
+        self.leaving = Leaving(self, self.desk, self.ask_save)
         self.plumb_line = PlumbLine(self.desk)
         self._compose()
         self.actions_by_key = make_actions(self, self._slots())
@@ -95,9 +96,9 @@ class Window(QMainWindow):
         return {
             **pages,
             **schemes,
-            "new": desk.new,
+            "new": lambda: self.leaving.replace(desk.new),
             "open": self.ask_open,
-            "demo": desk.open_demo,
+            "demo": lambda: self.leaving.replace(desk.open_demo),
             "save_copy": self.ask_save,
             "export": self.ask_export,
             "close": self.close,
@@ -200,7 +201,11 @@ class Window(QMainWindow):
         """Choose a casebook to open."""
         name, _ = QFileDialog.getOpenFileName(self, "Open a casebook", "", CASEBOOKS)
         if name:
-            self.desk.open(Path(name))
+            self.open(Path(name))
+
+    def open(self, path: Path) -> None:
+        """Open a casebook in place of this one; asks where this one would be lost."""
+        self.leaving.replace(lambda: self.desk.open(path))
 
     def ask_save(self, then: Callable[[], None] | None = None) -> None:
         """Choose where the copy goes."""
@@ -254,7 +259,7 @@ class Window(QMainWindow):
         for path in self.settings.recent:
             action = self.recent_menu.addAction(path.name)
             action.setToolTip(str(path))
-            action.triggered.connect(lambda _=False, each=path: self.desk.open(each))
+            action.triggered.connect(lambda _=False, each=path: self.open(each))
         if self.recent_menu.isEmpty():
             self.recent_menu.addAction("None yet").setEnabled(False)
         else:
@@ -265,11 +270,17 @@ class Window(QMainWindow):
 
     def closeEvent(self, event: QCloseEvent) -> None:
         """Ask where something would be lost; else end everything in order."""
-        if self._ended or not self.leaving.asks():
+        if not self._ended and self.leaving.loses:
+            event.ignore()
+            self.leaving.ask_to_close(self.leave)
+        else:
             self.end()
             event.accept()
-        else:
-            event.ignore()
+
+    def leave(self) -> None:
+        """Close without asking."""
+        self.end()
+        self.close()
 
     def end(self) -> None:
         """End pages, the probe and the desk; the window shows nothing new afterwards."""
@@ -278,6 +289,7 @@ class Window(QMainWindow):
         self._ended = True
         self.settings.geometry = self.saveGeometry()
         self.settings.sync()
+        self.hide()  # what still has to be written is written unseen, not in a frozen window
         self.stack.close_pages()
         self.three_d.close()
         self.desk.close()

@@ -2,6 +2,7 @@
 
 import threading
 from collections.abc import Callable, Iterable
+from contextlib import ExitStack
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -12,7 +13,7 @@ from plumbrule_core.documents.edits import edited
 from plumbrule_core.documents.findings import Edit, Remedy
 from plumbrule_core.documents.plan import Machine
 from plumbrule_core.documents.species import Species
-from plumbrule_core.errors import Refused
+from plumbrule_core.errors import PlumbruleError, Refused
 from plumbrule_desktop.state.changes import with_species
 from plumbrule_desktop.state.clerk import Clerk
 from plumbrule_desktop.state.running import Running
@@ -23,7 +24,9 @@ if TYPE_CHECKING:
 
 __all__ = ["Casebook", "Desk", "Entry", "Offer", "title_of"]
 
-CLOSE_SECONDS = 5
+CLOSE_SECONDS = 5.0
+"""So long edits may take to be written when the window closes."""
+SHUT_SECONDS = 2.0
 
 
 class Desk(Running):
@@ -31,6 +34,8 @@ class Desk(Running):
 
     def __init__(self, parent: QObject | None = None) -> None:
         super().__init__(parent)
+        self._held: Session | None = None
+        """The casebook that is open; belongs to the clerk's thread."""
         self._reader = Clerk("plumbrule-reader", self)
 
     # opening and closing
@@ -40,8 +45,8 @@ class Desk(Running):
         self._begin(lambda session: session.open(None))
 
     def open(self, path: Path) -> None:
-        """Open a casebook; a message says why it cannot be."""
-        self._begin(lambda session: session.open(path))
+        """Open a casebook; a message says why it cannot be. The one that is open is only read anew."""
+        self._begin(lambda session: session.open(path), path)
 
     def open_demo(self) -> None:
         """Open an unsaved casebook with the demo questions."""
@@ -65,39 +70,42 @@ class Desk(Running):
     def close(self) -> None:
         """Close the casebook and end the threads; a run must have ended before."""
         self._timer.stop()
-        session, self._session = self._session, None
-        if session is not None:
-            closed = threading.Event()
-
-            def shut() -> None:
-                session.close()
-                closed.set()
-
-            self._clerk.do(shut)
-            closed.wait(CLOSE_SECONDS)
-        self._clerk.close()
+        self._session = None
+        self._generation += 1  # what only the window wants to know is not worked out any more
+        self._clerk.do(self._shut)
+        if not self._clerk.close(CLOSE_SECONDS):
+            # A job that never ends is in hand and may hold the casebook: closing must not wait for it either.
+            shutting = threading.Thread(target=self._shut, daemon=True)
+            shutting.start()
+            shutting.join(SHUT_SECONDS)
         self._reader.close()
 
-    def _begin(self, opened: "Callable[[type[Session]], Session]") -> None:
+    def _shut(self) -> None:
+        if self._held is not None:
+            self._held.close()
+
+    def _begin(self, opened: "Callable[[type[Session]], Session]", path: Path | None = None) -> None:
         if self.running:
             self.message.emit("A run is under way. Stop it before another casebook is opened.", "error")
             return
-        old = self._session
 
         def work() -> tuple["Session", Offer, int]:
             from plumbrule_core import session as core
 
-            fresh = opened(core.Session)
-            if not fresh.briefs():
-                _first_question(fresh)
-            if old is not None:
-                old.close()
             offer = Offer(core.rung_cards(), core.basis_names(), core.Session.export_suffixes())
-            return fresh, offer, fresh.briefs()[0].id if fresh.briefs() else 0
+            old = self._held
+            if old is not None and _writes(old, path):
+                return old, offer, ids_of(old)[0]
+            fresh, first = _furnished(opened, core.Session)
+            self._held = fresh
+            if old is not None:
+                self._close_old(old)
+            return fresh, offer, first
 
         def then(outcome: tuple["Session", Offer, int]) -> None:
-            self._session, self._offer, first = outcome
-            self._brief_id = first or None
+            fresh, self._offer, first = outcome
+            if fresh is not self._session:
+                self._session, self._brief_id, self._computed = fresh, first or None, False
             self._refresh(reset=True)
 
         def failed(error: Exception) -> None:
@@ -106,6 +114,13 @@ class Desk(Running):
                 self.new()
 
         self._clerk.do(work, then, failed)
+
+    def _close_old(self, old: "Session") -> None:
+        try:
+            old.close()
+        except (PlumbruleError, OSError) as error:
+            trouble = error
+            self._clerk.post(lambda: self._say(trouble))
 
     # questions
 
@@ -260,7 +275,20 @@ class Desk(Running):
             self._clerk.do(session.machine, then, self._say)
 
 
-def _first_question(session: "Session") -> None:
-    if not session.read_only:
-        session.add_brief(Brief(), "Begin")
-        session.forget_history()
+def _writes(session: "Session", path: Path | None) -> bool:
+    """Whether this session has that file open and may write it: a second one could only read it."""
+    own = session.path
+    return path is not None and own is not None and not session.read_only and own.resolve() == path.resolve()
+
+
+def _furnished(opened: "Callable[[type[Session]], Session]", core: "type[Session]") -> "tuple[Session, int]":
+    """A casebook with at least one question, and the number of the first; closed again where that fails."""
+    with ExitStack() as undone:
+        session = opened(core)
+        undone.callback(session.close)
+        if not session.briefs() and not session.read_only:
+            session.add_brief(Brief(), "Begin")
+            session.forget_history()
+        first = next(iter(ids_of(session)), 0)
+        undone.pop_all()
+    return session, first

@@ -42,6 +42,8 @@ class Running(Kept):
         self._running_id: int | None = None
         self._starting = False
         self._stop_asked = False
+        self._labels: dict[str, str] = {}
+        self._computed = False
         self._events: list[Event] = []
         self._events_lock = threading.Lock()
         self._timer = QTimer(self, interval=TICK_MS)
@@ -57,12 +59,19 @@ class Running(Kept):
         """The number of the question that is being run."""
         return self._running_id
 
+    @property
+    def unsaved_work(self) -> bool:
+        """Whether the casebook is in no file and holds a step or a result that would be lost with it."""
+        file = self._casebook
+        return file.path is None and (file.undo_label is not None or self._computed)
+
     def run(self) -> None:
         """Start the tasks that are not answered yet."""
         session, brief_id = self._session, self._brief_id
         if session is None or brief_id is None or self.running or self._refuse_read_only():
             return
         self._starting, self._stop_asked, self._running_id = True, False, brief_id
+        labels: dict[str, str] = {}
         self.run_changed.emit(frozenset())
 
         def failed(error: Exception) -> None:
@@ -70,7 +79,12 @@ class Running(Kept):
             self._say(error)
             self.run_changed.emit(frozenset())
 
-        self._clerk.do(lambda: session.run(brief_id, self._on_event), self._started, failed)
+        def work() -> Run:
+            labels.update({task.id: task.label for task in session.plan(brief_id).tasks})
+            return session.run(brief_id, self._on_event)
+
+        self._labels = labels
+        self._clerk.do(work, self._started, failed)
 
     def stop(self) -> None:
         """Ask the run to stop; what was checkpointed stays. Never waits."""
@@ -97,7 +111,9 @@ class Running(Kept):
             self._reload_state(frozenset(event.task for event in events))
         for event in events:
             if isinstance(event, Failed):
-                self.message.emit(event.reason, "error")
+                self.message.emit(f"{self._labels[event.task]}: {event.reason}", "error")
+            elif isinstance(event, Finished) and not event.reused:
+                self._computed = True
         if ended and self._run is not None:
             self._ended(self._run)
         if ended or any(isinstance(event, Finished) for event in events):
@@ -109,7 +125,7 @@ class Running(Kept):
         self._reload_state(frozenset())
         try:
             run.wait(0)
-        except PlumbruleError as error:
+        except (PlumbruleError, OSError) as error:
             self._say(error)
             return
         if run.outcome != "failed":

@@ -91,7 +91,7 @@ def open_window(qtbot, qapp) -> Iterator[Callable[..., Window]]:
         if window.desk.running:
             window.desk.stop()
             qtbot.waitUntil(lambda window=window: not window.desk.running, timeout=LONG)
-        window.leaving.leave()
+        window.leave()
         window.deleteLater()
 
 

@@ -1,3 +1,4 @@
+import threading
 from pathlib import Path
 
 import pytest
@@ -212,7 +213,9 @@ def test_an_answer_to_an_older_edit_never_takes_back_a_newer_one(
         """The answers to the first edit are there but not handed over yet when the second is made."""
         refresh(reset)
         if not seen:
-            fresh_desk._clerk._pool.submit(lambda: None).result(timeout=60)
+            answered = threading.Event()
+            fresh_desk._clerk.do(answered.set)
+            assert answered.wait(60)
             fresh_desk.brief_changed.connect(lambda: seen.append(fresh_desk.brief.recipe.basis[0]))
             fresh_desk.edit(changes.set_recipe("basis", "cc-pVQZ"), "Second")
 

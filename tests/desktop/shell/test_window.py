@@ -287,7 +287,7 @@ def test_a_closed_window_leaves_no_window_no_picture_and_no_thread_behind(
         window.desk.add_species((water,), "Paste")
         qtbot.waitUntil(lambda window=window: window.three_d.answer is not None, timeout=LONG)
         view = build_page(window).molecule.view
-        window.leaving.leave()
+        window.leave()
         assert not view.three_d
         window.deleteLater()
     QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)

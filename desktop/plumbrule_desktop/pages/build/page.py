@@ -1,6 +1,6 @@
 """The Build page itself: three columns over the desk."""
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent
 from PySide6.QtWidgets import QHBoxLayout, QSplitter, QWidget
 
@@ -15,6 +15,8 @@ from plumbrule_desktop.state.desk import Desk
 
 class BuildPage(QWidget):
     """Species left, the picture in the middle, the recipe right. Molecules can be dropped on it."""
+
+    demo_wanted = Signal()
 
     def __init__(self, desk: Desk, three_d: ThreeD, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -46,7 +48,7 @@ class BuildPage(QWidget):
         self.molecule.cut_wanted.connect(self._ask_bond)
         invitation.paste.clicked.connect(self.intake.paste)
         invitation.files.clicked.connect(self.intake.ask_files)
-        invitation.demo.clicked.connect(desk.open_demo)
+        invitation.demo.clicked.connect(lambda: self.demo_wanted.emit())
 
     def paste(self) -> None:
         """Put in the molecule on the clipboard."""

@@ -14,8 +14,6 @@ from plumbrule_core.rungs.correlated.reference import correlated_used, reference
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
 from plumbrule_core.rungs.published_systems import (
     AMIDOGEN_SMALL,
-    BORON_HYDRIDE,
-    FLUORIDE_FROZEN,
     HELIUMS_TWO,
     HYDROGEN,
     WATER_SMALL,
@@ -39,8 +37,6 @@ class FCI:
         AMIDOGEN_SMALL.gives(-55.633264),
         HELIUMS_TWO.gives(-5.74032427777),
         WATER_SMALL.gives(-76.1210978),
-        BORON_HYDRIDE.gives(-25.2184315),
-        FLUORIDE_FROZEN.slowly().gives(-100.0194112692 - 0.2092292951),
     )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:

@@ -140,15 +140,6 @@ WATER_SMALL = System(
     atol=1e-6,
     slow=True,
 )
-BORON_HYDRIDE = System(
-    xyz="B 0 0 0\nH 0 0 1.25386",
-    basis="aug-cc-pVDZ",
-    source="M. L. Leininger et al., J. Chem. Phys. 112, 9213 (2000) for the system; own value, PySCF 2.14.0",
-    check="F24",
-    atol=2e-6,
-    core="frozen",
-    slow=True,
-)
 WATER_SIX_D = System(
     xyz=from_bohr("O 0 0 0; H 0 1.43055071 1.10725140; H 0 -1.43055071 1.10725140"),
     basis="6-31G**",

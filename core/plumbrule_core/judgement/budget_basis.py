@@ -6,6 +6,7 @@ from plumbrule_core.documents.questions import BondQuestion
 from plumbrule_core.judgement.answer import LadderValue
 from plumbrule_core.judgement.budget_tables import CLASSES, TABLES, in_unit, size_factor
 from plumbrule_core.judgement.case import Case
+from plumbrule_core.rungs import RUNGS
 from plumbrule_core.units import from_hartree
 
 _TABLE = TABLES["basis_set"]
@@ -26,16 +27,30 @@ def basis_line(case: Case, best: LadderValue, kind: str) -> BudgetLine | None:
         f"the limit lies {seen:.3g} {case.unit} from the larger set, more than the {expected:.3g} of "
         "comparable cases"
         if measured
-        else f"twice the rms error of {row} for {kind} energies"
+        else f"twice the rms error of CCSD(T) in {row} for {kind} energies{_unlike(best.rung)}"
     )
+    settles = _settles_faster(best.rung)
     return BudgetLine(
         cause="basis set",
         size=seen if measured and seen is not None else expected,
         unit=case.unit,
         how="; ".join([how, *doubts]),
-        source="this run" if measured else _TABLE["source"],
-        shift=None if best.extrapolated else _shift(case, used[-1], kind, factor),
+        source="this run" if measured else _source(best.rung),
+        shift=None if best.extrapolated or settles else _shift(case, used[-1], kind, factor),
     )
+
+
+def _settles_faster(rung: str) -> bool:
+    """Hartree-Fock and functionals, whose energies come to their limit exponentially."""
+    return rung == "HF" or RUNGS[rung].kind != "wave function"
+
+
+def _unlike(rung: str) -> str:
+    return f", more than {rung} needs, which settles faster with the basis" if _settles_faster(rung) else ""
+
+
+def _source(rung: str) -> str:
+    return f"{_TABLE['source']}; {_TABLE['mean_field']}" if _settles_faster(rung) else str(_TABLE["source"])
 
 
 def _internal(case: Case, best: LadderValue) -> float | None:

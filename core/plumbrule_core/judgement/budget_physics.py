@@ -2,8 +2,10 @@
 
 import math
 
+from plumbrule_core.basis_sets import frozen_orbitals
 from plumbrule_core.documents.findings import BudgetLine
-from plumbrule_core.documents.species import Species
+from plumbrule_core.documents.ground_states import ground_multiplicity
+from plumbrule_core.documents.species import Species, hill, spin_words
 from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.judgement.budget_tables import TABLES, column, in_unit, size_factor
 from plumbrule_core.judgement.case import Case, SpeciesView
@@ -17,10 +19,7 @@ MILLIDYNE_PER_ANGSTROM = 1.0 / 15.5689
 def core_line(case: Case, kind: str) -> BudgetLine | None:
     """The correlation of the core: left out where it is frozen, small where the basis was made for it."""
     table = TABLES["core"]
-    if (
-        all(view.correlated_electrons == view.species.electrons for view in case.views)
-        and case.recipe.core == "frozen"
-    ):
+    if not any(_has_core(case, view) for view in case.views):
         return None
     treated = case.recipe.core == "all" and all(basis.core_valence for basis in case.bases)
     heavy = heaviest(case) > 10
@@ -30,7 +29,7 @@ def core_line(case: Case, kind: str) -> BudgetLine | None:
         else column("core", "frozen", kind) * (table["heavier_factor"] if heavy else 1.0)
     )
     factor = size_factor(case, kind)
-    how = "all electrons are correlated" if treated else "frozen core; typical size of what is left out"
+    how = _core_words(case, treated)
     source = table["source"] + (f"; {table['heavier_source']}" if heavy and not treated else "")
     return BudgetLine(
         cause="core correlation",
@@ -39,6 +38,23 @@ def core_line(case: Case, kind: str) -> BudgetLine | None:
         how=how,
         source=source,
     )
+
+
+def _has_core(case: Case, view: SpeciesView) -> bool:
+    """Whether there is a core at all, frozen, correlated or in a potential; hydrogen and helium have none."""
+    symbols_here = [atom.symbol for atom in view.species.atoms]
+    if case.largest is None or case.largest.missing(symbols_here):
+        return any(ELEMENTS[symbol].number > 2 for symbol in symbols_here)
+    potential = any(case.largest.potential_electrons(symbol) for symbol in symbols_here)
+    return potential or frozen_orbitals(symbols_here, case.largest) > 0
+
+
+def _core_words(case: Case, treated: bool) -> str:
+    if treated:
+        return "all electrons are correlated"
+    if case.recipe.core == "all":
+        return "all electrons are correlated, but in a basis that was not made for the core"
+    return "frozen core; typical size of what is left out"
 
 
 def relativity_line(case: Case, kind: str) -> BudgetLine:
@@ -120,14 +136,15 @@ def spin_orbit_line(case: Case) -> BudgetLine | None:
     """The spin-orbit lowering of atoms and small radicals, a known shift; gaps in the table are said."""
     shifts = [(part, _lowering(part.species)) for part in case.parts]
     known = math.fsum(-part.coefficient * cm for part, cm in shifts if cm is not None)
-    unknown = [part.species.formula for part, cm in shifts if cm is None]
+    unlisted = [part for part, cm in shifts if cm is None]
+    unknown = [f"{part.species.formula} ({_spin(part.species)})" for part in unlisted]
     if not known and not unknown:
         return None
     table = TABLES["spin_orbit"]
     gap = f"; not in the table: {', '.join(dict.fromkeys(unknown))}" if unknown else ""
     return BudgetLine(
         cause="spin-orbit coupling",
-        size=in_unit(table["unknown"] * len(unknown), case.unit),
+        size=in_unit(math.hypot(*(p.coefficient * _unknown(p.species) for p in unlisted)), case.unit),
         unit=case.unit,
         how=f"not in the number: the first-order lowering of atoms and radicals{gap}",
         source=table["source"],
@@ -135,13 +152,36 @@ def spin_orbit_line(case: Case) -> BudgetLine | None:
     )
 
 
+def _spin(species: Species) -> str:
+    return spin_words(species.multiplicity).split(",")[0]
+
+
+def _unknown(species: Species) -> float:
+    """In kcal/mol: the largest first-order lowering that is known of the heaviest atom's row."""
+    heaviest_atom = max(ELEMENTS[atom.symbol].number for atom in species.atoms)
+    rows = TABLES["spin_orbit"]["unknown"]
+    return float(next(size for limit, size in rows.items() if heaviest_atom <= int(limit)))
+
+
+def _key(species: Species) -> str:
+    """How the table names a species: the formula in Hill order and one sign for every charge."""
+    return hill(species.counts) + ("+" if species.charge > 0 else "-") * abs(species.charge)
+
+
 def _lowering(species: Species) -> float | None:
-    """In cm-1; 0 where there is none in first order, None where it matters and is not known."""
-    known = {**TABLES["spin_orbit"]["radicals"], **TABLES["spin_orbit"]["ions"]}
-    if len(species.atoms) == 1 and not species.charge:
-        known |= TABLES["spin_orbit"]["atoms"]
-    if species.formula in known:
-        return float(known[species.formula])
+    """In cm-1; 0 where there is none in first order, None where it matters and is not known.
+
+    A singlet has none. The table holds for the ground state; of another spin state nothing is known.
+    """
+    if species.multiplicity == 1:
+        return 0.0
+    table = TABLES["spin_orbit"]
+    if len(species.atoms) == 1:
+        known = table["ions"] if species.charge else table["atoms"]
+        ground = species.multiplicity == ground_multiplicity(species.atoms, species.charge)
+        return float(known[_key(species)]) if ground and _key(species) in known else None
+    known = table["molecules"].get(_key(species), {})
+    if str(species.multiplicity) in known:
+        return float(known[str(species.multiplicity)])
     heavy = any(ELEMENTS[atom.symbol].number > 18 for atom in species.atoms)
-    ion = len(species.atoms) == 1 and species.charge != 0
-    return None if species.multiplicity > 1 and (heavy or ion) else 0.0
+    return None if heavy or len(species.atoms) == 2 else 0.0

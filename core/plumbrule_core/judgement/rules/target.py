@@ -12,7 +12,7 @@ from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import add_rungs, advice, change, larger_basis
 from plumbrule_core.judgement.wording import in_unit
 
-SCALES = "zero-point energies of reactions and bonds of ordinary molecules, 3 to 30 kcal/mol: from memory"
+SCALES = "zero-point energies of reactions and bonds of ordinary molecules, 3 to 30 kcal/mol: common practice"
 
 
 def _too_wide(case: Case) -> Iterator[Finding]:

@@ -4,6 +4,7 @@ import textwrap
 from collections.abc import Iterator, Sequence
 
 from plumbrule_core.documents.amounts import memory
+from plumbrule_core.documents.findings import Verdict
 from plumbrule_core.documents.plan import Forecast, Task
 from plumbrule_core.exports import Record, words
 from plumbrule_core.exports.facts import energies_of, sentence_of, species_of
@@ -73,10 +74,14 @@ def _answer(record: Record) -> str:
 
 def _verdict(record: Record) -> str:
     verdict = record.judgement.verdict
-    said = " ".join(verdict.reasons) or verdict.headline
-    return textwrap.fill(
-        f"verdict: {verdict.level}{f': {said}' if said else ''}", WIDTH, subsequent_indent="  "
-    )
+    return textwrap.fill(f"verdict: {_said(verdict)}", WIDTH, subsequent_indent="  ")
+
+
+def _said(verdict: Verdict) -> str:
+    """The level and its headline, which opens with the level already except where it is unknown."""
+    if verdict.headline.lower().startswith(f"{verdict.level}:"):
+        return verdict.headline[0].lower() + verdict.headline[1:]
+    return f"{verdict.level}: {verdict.headline}" if verdict.headline else verdict.level
 
 
 def _finding(severity: str, headline: str, consequence: str) -> str:

@@ -2,19 +2,54 @@
 
 No single reading decides about coupled cluster. The families are the stability of the reference, the doubles
 and the singles amplitudes, the weight of the triples, the natural occupations, the weight of the reference
-determinant, the spin, and whether CCSD converged. Grades: 0 calm, 1 raised, 2 serious, 3 broken. Limits are published ones where there are any; how far beyond them is serious is
-our own calibration (`thresholds.json` names each).
+determinant, the spin, and whether CCSD converged. Grades: 0 calm, 1 raised,
+2 serious, 3 broken. Limits are published ones where there are any; how far beyond them is serious is our own
+calibration (`thresholds.json` names each).
 """
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
 from plumbrule_core.documents.findings import Evidence
+from plumbrule_core.documents.species import Species
+from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.thresholds import THRESHOLDS, Threshold
 
 Limits = tuple[str, ...]
 """Names of thresholds for grades 1, 2, 3."""
+
+
+_DOUBLES = ("t2_notable", "t2_serious", "t2_broken")
+_UPPER: Mapping[str, Limits] = {
+    "largest_t2": _DOUBLES,
+    "mp2_largest_t2": _DOUBLES,
+    "D2": ("d2",),
+    "%TAE[(T)]": ("tae_moderate", "tae_severe"),
+    "share_of_triples": ("share_of_triples_raised", "share_of_triples_serious", "share_of_triples_broken"),
+    "M": ("m_large", "m_serious"),
+    "s2_excess": ("spin_care", "spin_stop"),
+}
+_RESTRICTED: Mapping[str, Limits] = {
+    "instability_depth": ("instability_depth_care",),
+    "uhf_fractional": ("uhf_fractional_serious", "uhf_fractional_diradical"),
+}
+"""Upper limits that hold of closed shells alone."""
+
+LOWER: Mapping[str, Limits] = {
+    "c0_squared": ("c0_squared",),
+    "homo_lumo_gap": ("gap_small",),
+    "overlap_condition": ("overlap_small",),
+}
+"""Readings that should stay above a limit; the others stay below."""
+
+
+def limits_of(reading: str, species: Species) -> Limits:
+    """The limits of a reading that fit the species, the first first; empty where it has none."""
+    if reading in ("T1", "D1"):
+        return (singles_limits(species)[reading == "D1"],)
+    upper = {**_UPPER, **_RESTRICTED} if species.multiplicity == 1 else _UPPER
+    return upper.get(reading) or LOWER.get(reading, ())
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,9 +66,10 @@ def evidence_of(reading: str, value: float, limit: Threshold) -> Evidence:
     return Evidence(reading=reading, value=value, threshold=limit.value, unit=limit.unit, source=limit.source)
 
 
-def _grade(reading: str, value: float | None, limits: Limits) -> tuple[int, tuple[Evidence, ...]]:
+def _grade(view: SpeciesView, reading: str, value: float | None) -> tuple[int, tuple[Evidence, ...]]:
     if value is None:
         return 0, ()
+    limits = limits_of(reading, view.species)
     passed = [THRESHOLDS[name] for name in limits if value > THRESHOLDS[name].value]
     return len(passed), (evidence_of(reading, value, passed[0]),) if passed else ()
 
@@ -63,23 +99,23 @@ def doubles_grade(view: SpeciesView) -> Grade:
     name = "largest_t2" if view.number("largest_t2") is not None else "mp2_largest_t2"
     return _worst(
         "doubles",
-        _grade(name, view.number(name), ("t2_notable", "t2_serious", "t2_broken")),
-        _grade("D2", view.number("D2"), ("d2",)),
+        _grade(view, name, view.number(name)),
+        _grade(view, "D2", view.number("D2")),
     )
 
 
-def singles_limits(view: SpeciesView) -> tuple[str, str]:
+def singles_limits(species: Species) -> tuple[str, str]:
     """Which limits of T1 and of D1 fit the species."""
-    if view.has_metal:
+    if any(ELEMENTS[symbol].is_transition_metal for symbol in species.counts):
         return "t1_metal", "d1_metal"
-    return ("t1_closed", "d1") if view.closed_shell else ("t1_open", "d1_open")
+    return ("t1_closed", "d1") if species.multiplicity == 1 else ("t1_open", "d1_open")
 
 
 def singles_grade(view: SpeciesView) -> Grade:
     """T1 and D1 with the limits that fit the species; twice the limit of both, or a huge T1, is more."""
-    t1_limit, d1_limit = singles_limits(view)
+    t1_limit, d1_limit = singles_limits(view.species)
     t1, d1 = view.number("T1"), view.number("D1")
-    graded = _worst("singles", _grade("T1", t1, (t1_limit,)), _grade("D1", d1, (d1_limit,)))
+    graded = _worst("singles", _grade(view, "T1", t1), _grade(view, "D1", d1))
     if not graded.grade or t1 is None or d1 is None:
         return graded
     twice = t1 > 2 * THRESHOLDS[t1_limit].value and d1 > 2 * THRESHOLDS[d1_limit].value
@@ -90,22 +126,21 @@ def singles_grade(view: SpeciesView) -> Grade:
 
 def triples_grade(view: SpeciesView, case: Case) -> Grade:
     """The weight of (T) in the atomisation energy, where atoms were computed, and in correlation."""
-    shares = ("share_of_triples_raised", "share_of_triples_serious", "share_of_triples_broken")
     return _worst(
         "triples",
-        _grade("%TAE[(T)]", case.tae_triples(view), ("tae_moderate", "tae_severe")),
-        _grade("share_of_triples", view.share_of_triples, shares),
+        _grade(view, "%TAE[(T)]", case.tae_triples(view)),
+        _grade(view, "share_of_triples", view.share_of_triples),
     )
 
 
 def occupations_grade(view: SpeciesView) -> Grade:
     """How far the MP2 natural occupations are from two and none, as M."""
-    return _worst("occupations", _grade("M", view.number("M"), ("m_large", "m_serious")))
+    return _worst("occupations", _grade(view, "M", view.number("M")))
 
 
 def spin_grade(view: SpeciesView) -> Grade:
     """How far <S^2> lies above that of the spin state."""
-    return _worst("spin", _grade("s2_excess", view.number("s2_excess"), ("spin_care", "spin_stop")))
+    return _worst("spin", _grade(view, "s2_excess", view.number("s2_excess")))
 
 
 def configuration_grade(view: SpeciesView) -> Grade:

@@ -8,12 +8,14 @@ from plumbrule_core.documents.species import Species
 Origin = Literal["atom", "optimised", "force field", "cut", "unknown"]
 
 _BUILT = re.compile(
-    r"\b(smiles|force[ -]?field|mmff\w*|uff|gaff\d?|amber\w*|charmm\w*|opls\w*|dreiding|built|drawn|sketch\w*)\b"
+    r"\b(smiles|force[ -]?field|mmff\w*|uff|gaff\d?|amber\w*|charmm\w*|opls\w*|dreiding"
+    r"|built|drawn|sketch\w*)\b"
 )
 _WORK = r"(optimi[sz]\w*|relax\w*|minimum)"
 _GOOD = re.compile(r"\b(optimi[sz]ed|relaxed|experimental|measured|published|minimum)\b")
 _DENIED = re.compile(
-    rf"\b(not|never|before|to be|yet|will be|should be|must be|needs?|isn't|wasn't)\b[\w\s,-]{{0,30}}\b{_WORK}\b"
+    r"\b(not|never|before|to be|yet|will be|should be|must be|needs?|isn't|wasn't)\b"
+    rf"[\w\s,-]{{0,30}}\b{_WORK}\b"
     rf"|\b(no|non|without)[ -](an? |any )?{_WORK}\b|\bun-?(optimi[sz]ed|relaxed)\b"
     r"|\b(optimi[sz]ed|relaxed)\b[\w\s,-]{0,20}\b(later|yet|pending)\b"
 )

@@ -127,10 +127,30 @@ def test_the_limit_of_t1_is_that_of_the_kind_of_species():
     assert limits == [0.044, 0.05]
 
 
-def test_every_limit_that_a_check_names_is_in_the_table_of_limits():
-    from plumbrule_core.exports.checks import LOWER, UPPER
+GRADED = {
+    "%TAE[(T)]": (4.0, 12.0),  # 5 and 10 %, Karton et al., J. Chem. Phys. 125, 144108 (2006)
+    "c0_squared": (0.95, 0.85),  # 0.90, Lee, Rice, Scuseria and Schaefer (1989)
+    "mp2_largest_t2": (0.05, 0.15),  # 0.1, common practice, no source
+    "largest_t2": (0.05, 0.15),
+    "M": (0.05, 0.2),
+    "s2_excess": (0.01, 0.3),
+    "share_of_triples": (0.03, 0.09),
+}
 
-    assert set(UPPER.values()) | set(LOWER.values()) <= set(THRESHOLDS)
+
+@pytest.mark.parametrize("name", GRADED)
+def test_a_check_fails_where_the_verdict_objects(name):
+    h2 = Species(name="h2", atoms=(Atom(symbol="H", x=0, y=0, z=0), Atom(symbol="H", x=0, y=0, z=0.7)))
+    calm, raised = (next(checks_of(h2, (Reading(name=name, value=v),))) for v in GRADED[name])
+    assert calm.passed
+    assert not raised.passed
+    assert raised.limit in {limit.value for limit in THRESHOLDS.values()}
+
+
+def test_the_amplitudes_of_mp2_are_no_check_where_those_of_ccsd_are_judged():
+    h2 = Species(name="h2", atoms=(Atom(symbol="H", x=0, y=0, z=0),), multiplicity=2)
+    both = (Reading(name="mp2_largest_t2", value=0.3), Reading(name="largest_t2", value=0.05))
+    assert [(check.reading, check.passed) for check in checks_of(h2, both)] == [("largest_t2", True)]
 
 
 def test_a_gap_below_its_limit_fails():

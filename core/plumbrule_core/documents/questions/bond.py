@@ -1,5 +1,6 @@
 """The energy of a bond: the fragments minus the molecule."""
 
+from collections.abc import Collection
 from typing import Annotated, ClassVar, Literal
 
 from pydantic import Field
@@ -21,7 +22,7 @@ class BondQuestion(QuestionBase):
 
     kind: Literal["bond"] = "bond"
     species: str
-    cut: tuple[AtomNumber, AtomNumber] | None = None
+    cut: tuple[int, int] | None = None
     fragments: tuple[str, str] | None = None
     fragment_multiplicities: tuple[AtomNumber, AtomNumber] | None = None
 
@@ -30,15 +31,19 @@ class BondQuestion(QuestionBase):
         fragments = tuple((f"fragments.{i}", name) for i, name in enumerate(self.fragments or (), start=1))
         return (("species", self.species), *fragments)
 
+    def value_faults(self, names: Collection[str]) -> tuple[Fault, ...]:
+        """Neither a cut nor fragments, or both; a cut between an atom and itself."""
+        if (self.cut is None) == (self.fragments is None):
+            says = "a bond needs either cut = [1, 2] or fragments = ['a', 'b']"
+            return (Fault(where="question", says=says),)
+        if self.cut and self.cut[0] == self.cut[1]:
+            return (Fault(where="question.cut", says="a bond is between two different atoms"),)
+        return ()
+
     def own_faults(self, species: Many) -> tuple[Fault, ...]:
         """A cut that is none, fragments that do not add up."""
-        if (self.cut is None) == (self.fragments is None):
-            return (
-                Fault(where="question", says="a bond needs either cut = [1, 2] or fragments = ['a', 'b']"),
-            )
-        if self.fragments:
-            return self._fragment_faults(species)
-        return self._cut_faults(species[self.species])
+        off = self._fragment_faults(species) if self.fragments else ()
+        return off + self._cut_faults(species[self.species])
 
     def _fragment_faults(self, species: Many) -> tuple[Fault, ...]:
         whole, parts = species[self.species], tuple(species[name] for name in self.fragments or ())
@@ -50,11 +55,16 @@ class BondQuestion(QuestionBase):
         return off
 
     def _cut_faults(self, whole: Species) -> tuple[Fault, ...]:
+        if self.cut is None:
+            return ()
         where = "question.cut"
-        first, second = self.cut or (1, 1)
-        if max(first, second) > len(whole.atoms) or first == second:
-            says = f"{whole.name} has atoms 1 to {len(whole.atoms)}; name two different ones"
+        outside = [str(number) for number in self.cut if not 1 <= number <= len(whole.atoms)]
+        if outside:
+            says = f"there is no atom {' and no atom '.join(outside)}: {whole.name} has {_atoms_of(whole)}"
             return (Fault(where=where, says=says),)
+        first, second = self.cut
+        if first == second:
+            return ()
         if whole.charge:
             says = (
                 f"{whole.name} is charged, so the fragments' charges are not clear; name them with fragments"
@@ -110,14 +120,21 @@ class BondQuestion(QuestionBase):
 
     def _bond_words(self, species: Many) -> str:
         whole = species.get(self.species)
-        if self.cut and whole and max(self.cut) <= len(whole.atoms):
+        if self.cut and whole and all(1 <= number <= len(whole.atoms) for number in self.cut):
             first, second = self.cut
             return f"{whole.atoms[first - 1].symbol}{first}-{whole.atoms[second - 1].symbol}{second}"
         return " and ".join(self.fragments or ("a bond",))
 
 
+def _atoms_of(whole: Species) -> str:
+    return f"atoms 1 to {len(whole.atoms)}" if len(whole.atoms) > 1 else "1 atom"
+
+
 def _fragment(whole: Species, side: tuple[int, ...], multiplicity: int | None) -> Species:
-    atoms: tuple[Atom, ...] = tuple(whole.atoms[place] for place in side)
+    atoms = tuple(whole.atoms[place] for place in side)
+    if len(atoms) == 1:
+        # An atom has the same energy everywhere: at one place, two alike are computed once.
+        atoms = (Atom(symbol=atoms[0].symbol, x=0.0, y=0.0, z=0.0),)
     return Species(
         name=_fragment_name(whole.name, [place + 1 for place in side]),
         atoms=atoms,
@@ -128,9 +145,25 @@ def _fragment(whole: Species, side: tuple[int, ...], multiplicity: int | None) -
 
 
 def _fragment_name(whole: str, numbers: list[int]) -> str:
-    """`ethane atoms 1,3`: the whole's name is shortened, never the numbers, which tell two fragments apart."""
-    listed = ",".join(map(str, numbers))
+    """`ethane, atoms 1 and 3-5`: the whole's name is shortened, never the numbers, which tell two apart."""
+    listed = _ranges(numbers)
     if len(listed) > NAME_LENGTH // 2:
         listed = f"from {numbers[0]}, {len(numbers)} in all"
-    ending = f" atoms {listed}"
+    ending = f", {'atom' if len(numbers) == 1 else 'atoms'} {listed}"
     return whole[: NAME_LENGTH - len(ending)] + ending
+
+
+def _ranges(numbers: list[int]) -> str:
+    """`1, 3-5 and 8` of rising numbers."""
+    runs: list[list[int]] = []
+    for number in numbers:
+        if runs and number == runs[-1][-1] + 1:
+            runs[-1].append(number)
+        else:
+            runs.append([number])
+    words = [word for run in runs for word in _run(run)]
+    return " and ".join(filter(None, (", ".join(words[:-1]), words[-1])))
+
+
+def _run(run: list[int]) -> list[str]:
+    return [f"{run[0]}-{run[-1]}"] if len(run) > 2 else [str(number) for number in run]

@@ -92,9 +92,23 @@ def limit_of_closed(reading: str) -> str:
 
 RULES = (
     _rule(
-        "t1-large", "T1", "singles", lambda view: singles_limits(view)[0], SINGLES, calm=0.0118, large=0.031
+        "t1-large",
+        "T1",
+        "singles",
+        lambda view: singles_limits(view.species)[0],
+        SINGLES,
+        calm=0.0118,
+        large=0.031,
     ),
-    _rule("d1-large", "D1", "singles", lambda view: singles_limits(view)[1], SINGLES, calm=0.025, large=0.08),
+    _rule(
+        "d1-large",
+        "D1",
+        "singles",
+        lambda view: singles_limits(view.species)[1],
+        SINGLES,
+        calm=0.025,
+        large=0.08,
+    ),
     _rule("d2-large", "D2", "doubles", lambda view: "d2", DOUBLES, calm=0.171, large=0.28),
     Rule(
         code="t2-large",

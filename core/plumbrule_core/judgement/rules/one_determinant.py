@@ -14,7 +14,7 @@ SOURCE = "own calibration on systems with known answers; each limit names its ow
 
 
 WITHOUT_REPAIR = ("HF", "MP2", "CISD")
-"""Rungs that a broken reference ruins by itself; coupled cluster repairs some, so it needs a second witness."""
+"""Rungs that a broken reference ruins by itself; coupled cluster repairs some and needs a second witness."""
 
 
 def _judge(case: Case) -> Iterator[Finding]:

@@ -88,7 +88,7 @@ def _known(species: Species) -> bool:
     return known or (len(species.atoms) == 1 and species.charge == 0)
 
 
-SPIN_SOURCE = "atoms: NIST Atomic Spectra Database; small molecules: common knowledge of spectroscopy; else the lowest spin"
+SPIN_SOURCE = "atoms: NIST Atomic Spectra Database; small molecules: common practice; else the lowest spin"
 
 
 def _radical(excess: float) -> Example:

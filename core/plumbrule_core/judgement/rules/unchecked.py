@@ -1,4 +1,4 @@
-"""Was anything measured that could have spoken against the number? A reading that is missing grades nothing."""
+"""Was anything measured that could speak against the number? A missing reading grades nothing."""
 
 from collections.abc import Iterator, Mapping
 

@@ -227,9 +227,10 @@ class QuestionLine(QFrame):
         return ready and not desk.running and bool(self._left().tasks)
 
     def _left(self) -> Plan:
-        """The tasks of the plan that are not answered yet."""
+        """The tasks of the plan that Run would compute: not answered yet, not converged or not checked."""
         plan, known = self._desk.plan or Plan(), self._desk.state.tasks
-        answered = {key for key, task in known.items() if task.state in ("done", "reused")}
+        over = {key: task.result for key, task in known.items() if task.state in ("done", "reused")}
+        answered = {key for key, result in over.items() if result is None or result.settled}
         return Plan(tasks=tuple(task for task in plan.tasks if task.id not in answered))
 
     def _dress_button(self) -> None:

@@ -5,6 +5,7 @@ import threading
 import pytest
 
 from plumbrule_core.documents.brief import Brief
+from plumbrule_core.documents.events import Failed, Started
 from plumbrule_core.documents.findings import Edit
 from plumbrule_core.documents.questions import EnergyQuestion, ReactionQuestion
 from plumbrule_core.documents.recipe import Recipe
@@ -152,4 +153,83 @@ def test_every_format_is_written_and_an_unknown_one_refused(tmp_path):
         assert (tmp_path / f"out{suffix}").stat().st_size > 50
     with pytest.raises(Unreadable):
         session.export(number, tmp_path / "out.doc")
+    session.close()
+
+
+def stored_again(session, number, rung, **changes):
+    """Change the stored result of one rung, as an earlier run might have left it."""
+    (task,) = (t for t in session.plan(number).tasks if t.spec.rung == rung)
+    result = session.record(number).results[task.id].model_copy(update=changes)
+    session._casebook.put_result(result)
+    return task.id
+
+
+@pytest.mark.parametrize("flaw", [{"converged": False}, {"unchecked": True}])
+def test_what_did_not_converge_or_was_not_checked_is_computed_again_and_replaced(tmp_path, flaw):
+    path = tmp_path / "case.plumb"
+    session = Session.open(path)
+    number = session.add_brief(ask(dihydrogen()))
+    run_to_end(session, number)
+    changed = stored_again(session, number, "CCSD", **flaw)
+    heard = []
+    run_to_end(session, number, heard)
+    assert [e.task for e in heard if e.event == "result" and not e.reused] == [changed]
+    assert session.record(number).results[changed].settled
+    session.close()
+
+
+def test_a_hartree_fock_that_moved_is_told_and_never_mixed_with_what_stood_on_the_old_one():
+    session = Session.open(None)
+    number = session.add_brief(ask(water()))
+    run_to_end(session, number)
+    before = session.judge(number).species[0].energies
+    hartree_fock = stored_again(session, number, "HF", energy=before["HF"] + 0.01)
+    assert set(session.judge(number).species[0].energies) == {"HF"}
+    heard = []
+    run_to_end(session, number, heard)
+    assert session.judge(number).species[0].energies == pytest.approx(before, abs=1e-6)
+    (result,) = (e.result for e in heard if e.event == "result" and e.task == hartree_fock and not e.reused)
+    assert "HF reached another solution than before" in result.notes[0]
+    session.close()
+
+
+def test_a_run_keeps_the_trace_and_the_log_of_what_is_reused():
+    session = Session.open(None)
+    number = session.add_brief(ask(water()))
+    run_to_end(session, number)
+    before = session.state(number).tasks
+    run_to_end(session, number)
+    after = session.state(number).tasks
+    assert {task.state for task in after.values()} == {"reused"}
+    assert any(task.trace for task in before.values())
+    assert {key: (t.trace, t.log) for key, t in after.items()} == {
+        key: (t.trace, t.log) for key, t in before.items()
+    }
+    session.close()
+
+
+def test_the_judgement_hears_of_failed_tasks_until_they_run_again(monkeypatch):
+    from plumbrule_core import judgement
+
+    heard = []
+    judge = judgement.judge
+
+    def listening(brief, plan, results, failed):
+        heard.append(dict(failed))
+        return judge(brief, plan, results, failed=failed)
+
+    monkeypatch.setattr(judgement, "judge", listening)
+    session = Session.open(None)
+    number = session.add_brief(ask(dihydrogen()))
+    run_to_end(session, number)
+    task = session.plan(number).tasks[-1]
+    session.judge(number)
+    state = session.state(number).tasks[task.id]
+    session._fold(number, Failed(seq=10**6, task=task.id, reason="the moon"))
+    session.judge(number)
+    assert heard == [{}, {task.id: "the moon"}]
+    session._fold(number, Started(seq=10**6 + 1, task=task.id))
+    session.judge(number)
+    assert heard[2:] == [{}]
+    assert state.state == "done"
     session.close()

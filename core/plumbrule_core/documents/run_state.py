@@ -1,5 +1,6 @@
 """The state of a run, as the events tell it: a value that the fold makes and the window shows."""
 
+from collections.abc import Mapping
 from typing import Literal
 
 from pydantic import Field
@@ -26,9 +27,19 @@ class TaskState(Document):
     reason: str = ""
     result: Result | None = None
 
+    @property
+    def waiting(self) -> "TaskState":
+        """The task as one that has yet to be told of, with the trace and the log of its last time."""
+        return TaskState(task=self.task, trace=self.trace, log=self.log)
+
 
 class RunState(Document):
     """Where a plan stands; `seq` is the number of the last event folded in."""
 
     tasks: FrozenMap[str, TaskState] = Field(default_factory=dict)
     seq: int = -1
+
+    @property
+    def failed(self) -> Mapping[str, str]:
+        """The tasks that failed or died and are not under way again, with the reasons."""
+        return {key: task.reason for key, task in self.tasks.items() if task.state in ("failed", "died")}

@@ -2,12 +2,7 @@
 
 from plumbrule_core.documents.plan import Task
 from plumbrule_core.engine.order import Known, Order
-
-SAME = 1e-6
-"""Energies of one task that differ by no more than this many hartree belong to one solution.
-
-A hundred times what a converged rung leaves open, and far below any two solutions that were met.
-"""
+from plumbrule_core.planning.solutions import SAME
 
 
 class Answers:
@@ -21,7 +16,7 @@ class Answers:
         return task.id in self._known
 
     def moved(self, task: Task, energy: float) -> str:
-        """Forget a known task that was found at another energy (hartree); the sentence says so, else empty."""
+        """Forget a known task that was found at another energy (hartree); the sentence says so."""
         before = self._known.get(task.id)
         if before is None or abs(energy - before.energy) <= SAME:
             return ""
@@ -33,7 +28,7 @@ class Answers:
         )
 
     def settle(self, task: Task, energy: float) -> None:
-        """A task has its answer: known tasks that stood on another energy (hartree) of it are known no more."""
+        """A task has its answer: tasks that stood on another energy (hartree) of it are known no more."""
         self._forget_upon(task, energy, energy)
 
     def _forget_upon(self, task: Task, energy: float, unless_said: float) -> None:

@@ -102,7 +102,7 @@ class Run:
         return "failed" if self._failed or self._error else "done"
 
     def _work_off(self, order: Order) -> None:
-        """Until every task is answered: after a death, what does not stand on the dead task is tried again."""
+        """Until every task is answered; after a death, what does not stand on the dead task goes on."""
         rest: Order | None = order
         while rest is not None and rest.open_tasks and not self._asked_to_stop:
             events: list[Event] = []
@@ -172,7 +172,8 @@ def run_plan(
     First every known result is told again as reused; then chain after chain runs in a worker of its own
     with so many threads, and the memory that its forecast asks for, within `memory_mb`. A chain that fails
     stops no other; where a worker dies, a new one goes on with what does not stand on the task that died.
-    A known task that is found elsewhere than before is told anew, with all upon it. Checkpoints and arrays go to `cache`.
+    A known task that is found elsewhere than before is told anew, with all upon it. Checkpoints and
+    arrays go to `cache`.
     """
     cache = cache.absolute()
     orders = tuple(

@@ -13,13 +13,25 @@ from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.documents.species import Species
 from plumbrule_core.planning.decisions import fits_density, notes, sets_of
 from plumbrule_core.planning.recipe_faults import recipe_faults
-from plumbrule_core.planning.sizes import size_of
+from plumbrule_core.planning.sizes import size_of, tables_of
+from plumbrule_core.planning.solutions import standing, unmixed
 from plumbrule_core.rungs import RUNGS
 
-__all__ = ["closed", "make_plan", "needed_species", "recipe_faults", "versions", "versions_that_matter"]
+__all__ = [
+    "closed",
+    "make_plan",
+    "needed_species",
+    "recipe_faults",
+    "standing",
+    "unmixed",
+    "versions",
+    "versions_that_matter",
+]
 
-RUNGS_VERSION = 1
+RUNGS_VERSION = 2
 """Raised whenever a rung's numbers change, so that stored results of older rungs are not reused."""
+READINGS_VERSION = 1
+"""Raised whenever a reading changes, so that results that were read by older code are computed again."""
 
 LIBRARIES = ("pyscf", "numpy", "scipy", "h5py", "rdkit", "pydantic")
 
@@ -38,8 +50,8 @@ def _version(name: str) -> str:
 
 
 def versions_that_matter() -> str:
-    """The versions that a number depends on, as a task's identity holds them."""
-    return f"plumbrule rungs {RUNGS_VERSION}, pyscf {_version('pyscf')}"
+    """The versions that every number depends on, as a task's identity holds them."""
+    return f"plumbrule rungs {RUNGS_VERSION}, readings {READINGS_VERSION}, pyscf {_version('pyscf')}"
 
 
 def make_plan(brief: Brief, machine: Machine) -> Plan:
@@ -93,7 +105,8 @@ def _settings(recipe: Recipe, basis: str, fitting: bool) -> Settings:
 
 
 def _task(species: Species, rung: str, settings: Settings, machine: Machine) -> Task:
-    spec = TaskSpec(species=species, rung=rung, settings=settings, versions=versions_that_matter())
+    versions = f"{versions_that_matter()}, tables {tables_of(species, settings)}"
+    spec = TaskSpec(species=species, rung=rung, settings=settings, versions=versions)
     return Task(
         id=spec.identity,
         spec=spec,

@@ -1,6 +1,7 @@
 """How large a calculation is: the counts that its price depends on."""
 
-from plumbrule_core.basis_sets import BASES, Basis, frozen_orbitals
+from plumbrule_core.basis_sets import BASES, FROZEN_CORE, Basis, frozen_orbitals
+from plumbrule_core.documents.base import digest_of
 from plumbrule_core.documents.plan import Settings
 from plumbrule_core.documents.species import Species
 from plumbrule_core.rungs.protocol import Size
@@ -29,6 +30,23 @@ def frozen_of(species: Species, basis: Basis) -> int:
 def explicit_electrons(species: Species, basis: Basis) -> int:
     """The electrons that no core potential of the basis replaces."""
     return species.electrons - sum(basis.potential_electrons(symbol) for symbol in symbols_of(species))
+
+
+def tables_of(species: Species, settings: Settings) -> str:
+    """The digest of what the basis and core tables say of these elements: it is part of a task's identity."""
+    basis = BASES[settings.basis]
+    rows = {
+        symbol: (
+            basis.name_for(symbol),
+            basis.counts[symbol],
+            basis.potential_for(symbol),
+            basis.potential_electrons(symbol),
+            symbol in basis.fitted,
+            FROZEN_CORE[symbol],
+        )
+        for symbol in symbols_of(species)
+    }
+    return digest_of([rows, basis.cartesian, basis.fitting])
 
 
 def size_of(species: Species, settings: Settings) -> Size:

@@ -6,7 +6,7 @@ import pytest
 from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.errors import PlumbruleError
 from plumbrule_core.rungs.molecule import reference_kind
-from plumbrule_core.rungs.scf import ladder
+from plumbrule_core.rungs.scf import ladder, stability
 from plumbrule_core.rungs.scf.guesses import needs_search
 from plumbrule_core.rungs.scf.watch import course_of
 
@@ -31,6 +31,50 @@ def test_the_followed_solution_is_stable_by_the_librarys_own_analysis(climb):
     field = climb("C 0 0 0; C 0 0 1.25", "HF").bench.mean_field
     field.verbose = 0
     assert field.stability(return_status=True)[2]
+
+
+def unmoved_for(tries, monkeypatch):
+    """So many descents end where they began, as those that fall back into a saddle."""
+    descend, steps = stability.descend, []
+
+    def stubborn(mean_field, watch, **start):
+        steps.append(mean_field.e_tot)
+        if len(steps) > tries:
+            descend(mean_field, watch, **start)
+
+    monkeypatch.setattr(stability, "descend", stubborn)
+    return steps
+
+
+@pytest.mark.parametrize("tries", [1, 3])
+def test_a_steep_instability_is_tried_the_other_way_and_further_before_it_is_given_up(
+    tries, climb, monkeypatch
+):
+    lowest = climb("C 0 0 0; C 0 0 1.25", "HF", basis="STO-3G").energy("HF")
+    unmoved_for(tries, monkeypatch)
+    climbed = climb("C 0 0 0; C 0 0 1.25", "HF", basis="STO-3G")
+    assert climbed.energy("HF") == pytest.approx(lowest, abs=1e-6)
+    assert climbed.bench.stability.internal
+
+
+def test_a_steep_instability_that_leads_nowhere_is_not_called_flat(climb, monkeypatch):
+    steps = unmoved_for(1000, monkeypatch)
+    climbed = climb("C 0 0 0; C 0 0 1.25", "HF", basis="STO-3G", reference="UHF")
+    assert len(steps) == 4
+    assert not climbed.bench.stability.internal
+    assert not climbed.readings["stable"]
+    assert "could not be followed to a lower one" in climbed.outcomes["HF"].notes[-1]
+
+
+@pytest.mark.parametrize("xyz", ["N 0 0 0; N 0 0 1.1", "O 0 0 0; H 0.96 0 0; H -0.24 0.93 0"])
+def test_a_closed_shell_that_is_stable_towards_uhf_is_stable_within_rhf(xyz, climb):
+    # The bound that spares the second search (R. Seeger and J. A. Pople, J. Chem. Phys. 66, 3045 (1977)).
+    climbed = climb(xyz, "HF", basis="6-31G")
+    field = climbed.bench.mean_field
+    # The library's Hessian of one kind of orbitals counts every rotation four times.
+    assert stability.internal_mode(field).value / 4 > stability.external_mode(field).value > 0
+    assert climbed.bench.stability.external
+    assert climbed.bench.stability.internal
 
 
 def test_an_instability_towards_uhf_is_measured_and_not_followed(climb):
@@ -77,7 +121,7 @@ def test_open_shells_and_metals_are_searched_and_ordinary_closed_shells_are_not(
 
 
 def test_the_ladder_climbs_to_second_order_where_simpler_measures_fail(climb, monkeypatch):
-    def crippled(first_guess):
+    def crippled(first_guess, huckel):
         yield ladder.Measure(name="first guess", guess=first_guess, cycles=2)
         yield ladder.Measure(name="damped", cycles=2, damping=0.5)
         yield ladder.Measure(name="level shift", cycles=2, level_shift=0.5)
@@ -100,7 +144,7 @@ def test_each_measure_converges_by_itself_and_leaves_no_trace_in_the_orbital_ene
 ):
     expected = climb("N 0 0 0; N 0 0 1.1", "HF")
     only = [m for m in ladder.measures("minao") if m.name == measure]
-    monkeypatch.setattr(ladder, "measures", lambda first_guess: iter(only))
+    monkeypatch.setattr(ladder, "measures", lambda first_guess, huckel: iter(only))
     climbed = climb("N 0 0 0; N 0 0 1.1", "HF")
     assert climbed.energy("HF") == pytest.approx(expected.energy("HF"), abs=1e-8)
     assert climbed.outcomes["HF"].arrays["orbital_energies"] == pytest.approx(
@@ -112,7 +156,7 @@ def test_a_field_that_never_converges_is_refused_and_labelled(climb, monkeypatch
     monkeypatch.setattr(
         ladder,
         "measures",
-        lambda first_guess: iter([ladder.Measure(name="first guess", guess="minao", cycles=3)]),
+        lambda first_guess, huckel: iter([ladder.Measure(name="first guess", guess="minao", cycles=3)]),
     )
     with pytest.raises(PlumbruleError, match=r"did not converge .*\((oscillating|drifting|slow)\)"):
         climb("N 0 0 0; N 0 0 1.1", "CCSD")
@@ -179,3 +223,12 @@ def test_a_method_without_its_ground_says_what_is_missing(make_task):
     given = Given(spec=make_task("He 0 0 0", "MP2"), bench=Bench(), shelf=None, threads=1, memory_mb=500)
     with pytest.raises(PlumbruleError, match="Hartree-Fock has not been computed"):
         RUNGS["MP2"].compute(given, None)
+
+
+def test_the_other_guess_is_one_that_the_molecule_admits():
+    def others(first_guess, huckel):
+        return [m.guess for m in ladder.measures(first_guess, huckel) if m.name == "other guess"]
+
+    assert others("atom", huckel=True) == ["huckel"]
+    assert others("atom", huckel=False) == ["minao"]
+    assert others("minao", huckel=False) == ["atom"]

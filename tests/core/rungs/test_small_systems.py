@@ -49,3 +49,46 @@ def test_the_nitrogen_atom_correlates_its_three_parallel_electrons(climb):
     climbed = climb("N 0 0 0", *LADDER, multiplicity=4)
     assert climbed.bench.frozen == 1
     assert climbed.outcomes["CCSD(T)"].correlation < climbed.outcomes["CCSD"].correlation < -0.05
+
+
+@pytest.mark.parametrize(
+    ("xyz", "multiplicity"),
+    [("He 0 0 0", 3), ("Be 0 0 0", 3), ("Mg 0 0 0", 3), ("Be 0 0 0; H 0 0 1.34", 4)],
+)
+def test_spins_that_the_free_atoms_have_no_orbital_for_are_computed(xyz, multiplicity, climb):
+    from pyscf import gto, scf
+
+    climbed = climb(xyz, "HF", multiplicity=multiplicity)
+    bare = scf.UHF(gto.M(atom=xyz, basis="cc-pvdz", spin=multiplicity - 1, verbose=0)).run(conv_tol=1e-10)
+    assert climbed.energy("HF") <= bare.e_tot + 1e-7
+    assert climbed.energy("HF") == pytest.approx(bare.e_tot, abs=0.05)
+    assert climbed.outcomes["HF"].notes[0].startswith("2 starting guesses")
+
+
+def test_a_guess_that_breaks_is_lost_and_the_others_go_on(climb, monkeypatch):
+    from plumbrule_core.rungs.scf import guesses
+
+    whole = climb("O 0 0 0; H 0 0 0.97", "HF", multiplicity=2).energy("HF")
+    guessed = guesses.guessed_density
+
+    def broken(mean_field, guess):
+        if guess == "atom":
+            raise RuntimeError("no atom today")
+        return guessed(mean_field, guess)
+
+    monkeypatch.setattr(guesses, "guessed_density", broken)
+    climbed = climb("O 0 0 0; H 0 0 0.97", "HF", multiplicity=2)
+    assert climbed.energy("HF") == pytest.approx(whole, abs=1e-7)
+    assert "atomic densities: no atom today" in climbed.outcomes["HF"].notes[1]
+
+
+def test_where_no_guess_can_be_made_the_task_fails_in_words(climb, monkeypatch):
+    from plumbrule_core.errors import PlumbruleError
+    from plumbrule_core.rungs.scf import guesses
+
+    def broken(mean_field, guess):
+        raise RuntimeError("no guess today")
+
+    monkeypatch.setattr(guesses, "guessed_density", broken)
+    with pytest.raises(PlumbruleError, match=r"no starting guess could be made.*no guess today"):
+        climb("O 0 0 0; H 0 0 0.97", "HF", multiplicity=2)

@@ -5,6 +5,8 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any
 
+import numpy as np
+
 from plumbrule_core.errors import PlumbruleError
 from plumbrule_core.rungs.scf.watch import Course, Watch, course_of
 
@@ -19,6 +21,10 @@ GRID_GRADIENT_TOLERANCE = 1e-5
 """The same for functionals, whose integration grid limits it."""
 
 
+BROKEN = (RuntimeError, ValueError, ArithmeticError, np.linalg.LinAlgError)
+"""What the library raises where a guess does not suit a molecule; another guess may still do."""
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Measure:
     """One rung of the ladder; a measure with a guess starts afresh, others from the best orbitals so far."""
@@ -31,10 +37,13 @@ class Measure:
     second_order: bool = False
 
 
-def measures(first_guess: str) -> Iterator[Measure]:
-    """The measures in the order in which they are tried, once a first guess has been chosen."""
+def measures(first_guess: str, huckel: bool = True) -> Iterator[Measure]:
+    """The measures in the order in which they are tried, once a first guess has been chosen.
+
+    `huckel` says whether the molecule admits that guess.
+    """
     yield Measure(name="first guess", guess=first_guess)
-    other = "atom" if first_guess != "atom" else "huckel"
+    other = "atom" if first_guess != "atom" else "huckel" if huckel else "minao"
     yield Measure(name="other guess", guess=other)
     yield Measure(name="damped", cycles=60, damping=0.5)
     yield Measure(name="level shift", cycles=100, level_shift=0.5)
@@ -53,7 +62,7 @@ def converge(mean_field: Any, first_guess: str, watch: Watch, name: str, start: 
     `start` is a density to begin from in place of the first guess. Raises PlumbruleError where nothing helps.
     """
     best: tuple[float, Any, Any] | None = None
-    for measure in measures(first_guess):
+    for measure in measures(first_guess, holds_huckel(mean_field.mol)):
         density = _density(mean_field, measure, best) if start is None else start
         start = None
         watch.begin(measure.name)
@@ -109,6 +118,22 @@ def _density(mean_field: Any, measure: Measure, best: tuple[float, Any, Any] | N
     if measure.guess or best is None:
         return guessed_density(mean_field, measure.guess or "minao")
     return mean_field.make_rdm1(best[1], best[2])
+
+
+def holds_huckel(molecule: Any) -> bool:
+    """Whether the occupied shells of the free atoms, of which that guess is made, hold the larger spin.
+
+    Two parallel electrons of helium or the four of a quartet BeH need an orbital that the atoms leave empty.
+    """
+    from pyscf.data.elements import NRSRHF_CONFIGURATION
+    from pyscf.gto import charge
+
+    held = 0
+    for atom in range(molecule.natm):
+        shells = NRSRHF_CONFIGURATION[charge(molecule.atom_symbol(atom))]
+        filled = sum((2 * k + 1) * -(-electrons // (4 * k + 2)) for k, electrons in enumerate(shells))
+        held += filled - molecule.atom_nelec_core(atom) // 2
+    return bool(held >= max(molecule.nelec))
 
 
 def guessed_density(mean_field: Any, guess: str) -> Any:

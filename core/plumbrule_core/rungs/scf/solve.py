@@ -5,7 +5,7 @@ from typing import Any
 from plumbrule_core.rungs.protocol import Given, Stability, Tell
 from plumbrule_core.rungs.scf.guesses import GUESSES, Start, needs_search, search
 from plumbrule_core.rungs.scf.ladder import converge, set_tolerances
-from plumbrule_core.rungs.scf.stability import analyse, follow
+from plumbrule_core.rungs.scf.stability import follow, settle
 from plumbrule_core.rungs.scf.stored import Solved, finished, fits, keep
 from plumbrule_core.rungs.scf.watch import Watch
 
@@ -25,19 +25,24 @@ def solve(mean_field: Any, given: Given, tell: Tell, functional: bool = False) -
     watch = Watch(shelf=given.shelf, tell=tell)
     start = _resumed(stored, mean_field, watch) or _start(mean_field, given, watch)
     measure = converge(mean_field, start.guess, watch, given.spec.species.name, start.density)
-    stable, followed = follow(mean_field, watch)
+    stability, followed = _followed(mean_field, watch) if functional else settle(mean_field, watch)
     for note in (*start.notes, *followed):
         tell.note(note)
     solved = Solved(
         iterations=watch.iterations,
         guess=start.guess,
         measure=measure,
-        stability=Stability(internal=stable) if functional else analyse(mean_field, stable),
+        stability=stability,
         notes=(*start.notes, *followed),
     )
     keep(given.shelf, mean_field, solved)
     tell.checkpoint("converged orbitals")
     return solved
+
+
+def _followed(mean_field: Any, watch: Watch) -> tuple[Stability, tuple[str, ...]]:
+    stable, notes = follow(mean_field, watch)
+    return Stability(internal=stable), notes
 
 
 def _start(mean_field: Any, given: Given, watch: Watch) -> Start:

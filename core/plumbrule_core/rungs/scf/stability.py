@@ -32,6 +32,10 @@ LOWER = 1e-6
 MOST_FOLLOWED = 4
 STEP = 0.5
 """First step along an unstable direction, in radians."""
+STEPS = (STEP, -STEP, 2 * STEP, -2 * STEP)
+"""The steps tried one after the other; a longer one leaves a saddle that a short one falls back to."""
+FLAT = -1e-3
+"""Below this eigenvalue (hartree) a direction is steep: that no way down was found does not make it flat."""
 
 Vector = NDArray[np.float64]
 
@@ -52,24 +56,19 @@ class Mode:
 def follow(mean_field: Any, watch: Watch | None) -> tuple[bool, tuple[str, ...]]:
     """Follow internal instabilities down; returns whether the end is stable, and what happened in words.
 
-    A direction along which the energy stays the same is no instability.
+    A direction that is barely unstable and along which the energy stays the same is no instability.
     """
     notes: list[str] = []
     for _ in range(MOST_FOLLOWED):
         mode = internal_mode(mean_field)
         if mode is None or not mode.unstable:
             return True, tuple(notes)
-        before = _kept(mean_field)
-        if watch is not None:
-            watch.begin("following an instability")
-        descend(mean_field, watch, orbitals=_moved(mean_field, mode.direction))
-        gain = before["e_tot"] - mean_field.e_tot
-        if gain < LOWER or not mean_field.converged:
-            flat = bool(mean_field.converged and abs(gain) < LOWER)
-            _put_back(mean_field, before)
-            if not flat:
-                notes.append("an instability of the solution could not be followed to a lower one")
-            return flat, tuple(notes)
+        gain = _gained(mean_field, mode, watch)
+        if gain is None:
+            notes.append("an instability of the solution could not be followed to a lower one")
+            return False, tuple(notes)
+        if gain < LOWER:
+            return True, tuple(notes)
         notes.append(
             f"the first solution was not a minimum; followed to one {gain * KJ_PER_HARTREE:.2f} kJ/mol lower "
             f"({gain:.6f} hartree)"
@@ -78,13 +77,49 @@ def follow(mean_field: Any, watch: Watch | None) -> tuple[bool, tuple[str, ...]]
     return mode is None or not mode.unstable, tuple(notes)
 
 
-def analyse(mean_field: Any, internal: bool) -> Stability:
-    """What the readings need: external stability and depth of a restricted solution, natural occupations."""
+def _gained(mean_field: Any, mode: Mode, watch: Watch | None) -> float | None:
+    """Go down along a mode; returns the gain in hartree, 0 where it is flat, None where no step helped."""
+    before = _kept(mean_field)
+    for step in STEPS:
+        if watch is not None:
+            watch.begin("following an instability")
+        descend(mean_field, watch, orbitals=_moved(mean_field, step * mode.direction))
+        gain = float(before["e_tot"] - mean_field.e_tot)
+        if mean_field.converged and gain >= LOWER:
+            return gain
+        flat = mean_field.converged and abs(gain) < LOWER and mode.value > FLAT
+        _put_back(mean_field, before)
+        if flat:
+            return 0.0
+    return None
+
+
+def settle(mean_field: Any, watch: Watch) -> tuple[Stability, tuple[str, ...]]:
+    """Bring a field of HF to a minimum of its kind, and measure what lies below it; says what happened.
+
+    A closed shell that is safely stable towards UHF is a minimum of its own kind too, which spares the second
+    search: the singlet Hessian is the triplet one plus 4 (ia|jb), a matrix without negative eigenvalues
+    (Seeger and Pople, the matrices of real RHF). Hybrid functionals have no such bound.
+    """
+    if mean_field.istype("UHF") or mean_field.istype("ROHF"):
+        stable, notes = follow(mean_field, watch)
+        return analyse(mean_field, stable), notes
+    outward = external_mode(mean_field)
+    if outward is None or outward.value > -UNSTABLE:
+        return analyse(mean_field, True, outward), ()
+    stable, notes = follow(mean_field, watch)
+    return analyse(mean_field, stable, external_mode(mean_field) if notes else outward), notes
+
+
+def analyse(mean_field: Any, internal: bool, mode: Mode | None = None) -> Stability:
+    """What the readings need: external stability and depth of a restricted solution, natural occupations.
+
+    `mode` is the lowest one of a restricted solution towards unrestricted ones, None where none can rotate.
+    """
     if mean_field.istype("UHF"):
         return Stability(internal=internal, natural_occupations=natural_occupations(mean_field))
     if mean_field.istype("ROHF"):
         return Stability(internal=internal)
-    mode = external_mode(mean_field)
     if mode is None or not mode.unstable:
         return Stability(internal=internal, external=True, depth=0.0, natural_occupations=_paired(mean_field))
     unrestricted = _broken(mean_field, mode.direction)
@@ -171,12 +206,12 @@ def _rotations(mean_field: Any) -> int:
 
 def _moved(mean_field: Any, direction: Vector) -> Any:
     if not mean_field.istype("UHF"):
-        return _rotated(mean_field.mo_coeff, mean_field.mo_occ, STEP * direction)
+        return _rotated(mean_field.mo_coeff, mean_field.mo_occ, direction)
     from pyscf.scf.hf import uniq_var_indices
 
     cut = int(uniq_var_indices(mean_field.mo_occ[0]).sum())
     parts = (direction[:cut], direction[cut:])
-    return np.array([_rotated(mean_field.mo_coeff[s], mean_field.mo_occ[s], STEP * parts[s]) for s in (0, 1)])
+    return np.array([_rotated(mean_field.mo_coeff[s], mean_field.mo_occ[s], parts[s]) for s in (0, 1)])
 
 
 def _rotated(orbitals: Any, occupation: Any, amounts: Vector) -> Any:

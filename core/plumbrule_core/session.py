@@ -55,7 +55,7 @@ def basis_names() -> tuple[str, ...]:
 
 
 def reading_limit(reading: str, species: Species) -> tuple[float, str, bool] | None:
-    """The limit of a reading that fits the species, its unit, and whether to stay below it; None: no limit."""
+    """The limit of a reading that fits the species, its unit, and whether to stay below it; else None."""
     for limit in (THRESHOLDS[name] for name in limits_of(reading, species)[:1]):
         return limit.value, limit.unit, reading not in LOWER
     return None
@@ -207,10 +207,8 @@ class Session:
         if plan.faults:
             raise Refused(plan.faults)
         machine = self.machine()
-        known = self._known(plan)
-        begun = {key: task.waiting for key, task in self.state(brief_id).tasks.items()}
         with self._lock:
-            self._live[brief_id] = (_key(plan), RunState(tasks=begun))
+            self._live[brief_id] = (_key(plan), begin(plan))
 
         def heard(event: Event) -> None:
             self._fold(brief_id, event)
@@ -218,7 +216,7 @@ class Session:
 
         return run_plan(
             plan,
-            known,
+            self._known(plan),
             LocalExecutor(),
             heard,
             threads=threads or machine.cores,
@@ -239,33 +237,30 @@ class Session:
             if task is not None and task.state not in ("waiting", "running", "reused"):
                 self._casebook.put_task_state(task)
 
-    def _stored(self, plan: Plan) -> Mapping[str, Result]:
-        return planning.standing(plan, self._casebook.results())
-
     def _known(self, plan: Plan) -> Mapping[str, Result]:
-        """What need not be computed again: what did not converge, or was not checked, is."""
-        return {key: result for key, result in self._stored(plan).items() if result.settled}
+        wanted = {task.id for task in plan.tasks}
+        return {key: result for key, result in self._casebook.results().items() if key in wanted}
 
     def state(self, brief_id: int) -> RunState:
         """Where the tasks stand: of the run, or as the casebook remembers them."""
         plan = self.plan(brief_id)
         with self._lock:
             key, live = self._live.get(brief_id, ("", RunState()))
-        if key != _key(plan):
-            kept = self._casebook.task_states(tuple(task.id for task in plan.tasks))
-            live = RunState(tasks={**begin(plan).tasks, **kept})
-        return planning.unmixed(plan, live)
+        if key == _key(plan):
+            return live
+        kept = self._casebook.task_states(tuple(task.id for task in plan.tasks))
+        return RunState(tasks={**begin(plan).tasks, **kept})
 
     # the outcome
 
     def judge(self, brief_id: int) -> Judgement:
         """The answer, its budget, the findings and the verdict, from what is known so far."""
         brief, plan = self.brief(brief_id), self.plan(brief_id)
-        stored, failed = self._stored(plan), self.state(brief_id).failed
-        key = (brief.digest, stored, failed)
+        known = self._known(plan)
+        key = (brief.digest, frozenset(known))
         kept = self._judged.get(brief_id)
         if kept is None or kept[0] != key:
-            kept = (key, judgement.judge(brief, plan, stored, failed=failed))
+            kept = (key, judgement.judge(brief, plan, known))
             self._judged[brief_id] = kept
         return kept[1]
 
@@ -276,7 +271,7 @@ class Session:
             brief=self.brief(brief_id),
             plan=plan,
             state=self.state(brief_id),
-            results=self._stored(plan),
+            results=self._known(plan),
             judgement=self.judge(brief_id),
             machine=self.machine(),
             versions=planning.versions(),

@@ -207,8 +207,10 @@ class Session:
         if plan.faults:
             raise Refused(plan.faults)
         machine = self.machine()
+        known = self._known(plan)
+        begun = {key: task.waiting for key, task in self.state(brief_id).tasks.items()}
         with self._lock:
-            self._live[brief_id] = (_key(plan), begin(plan))
+            self._live[brief_id] = (_key(plan), RunState(tasks=begun))
 
         def heard(event: Event) -> None:
             self._fold(brief_id, event)
@@ -216,7 +218,7 @@ class Session:
 
         return run_plan(
             plan,
-            self._known(plan),
+            known,
             LocalExecutor(),
             heard,
             threads=threads or machine.cores,
@@ -237,30 +239,33 @@ class Session:
             if task is not None and task.state not in ("waiting", "running", "reused"):
                 self._casebook.put_task_state(task)
 
+    def _stored(self, plan: Plan) -> Mapping[str, Result]:
+        return planning.standing(plan, self._casebook.results())
+
     def _known(self, plan: Plan) -> Mapping[str, Result]:
-        wanted = {task.id for task in plan.tasks}
-        return {key: result for key, result in self._casebook.results().items() if key in wanted}
+        """What need not be computed again: what did not converge, or was not checked, is."""
+        return {key: result for key, result in self._stored(plan).items() if result.settled}
 
     def state(self, brief_id: int) -> RunState:
         """Where the tasks stand: of the run, or as the casebook remembers them."""
         plan = self.plan(brief_id)
         with self._lock:
             key, live = self._live.get(brief_id, ("", RunState()))
-        if key == _key(plan):
-            return live
-        kept = self._casebook.task_states(tuple(task.id for task in plan.tasks))
-        return RunState(tasks={**begin(plan).tasks, **kept})
+        if key != _key(plan):
+            kept = self._casebook.task_states(tuple(task.id for task in plan.tasks))
+            live = RunState(tasks={**begin(plan).tasks, **kept})
+        return planning.unmixed(plan, live)
 
     # the outcome
 
     def judge(self, brief_id: int) -> Judgement:
         """The answer, its budget, the findings and the verdict, from what is known so far."""
         brief, plan = self.brief(brief_id), self.plan(brief_id)
-        known = self._known(plan)
-        key = (brief.digest, frozenset(known))
+        stored, failed = self._stored(plan), self.state(brief_id).failed
+        key = (brief.digest, stored, failed)
         kept = self._judged.get(brief_id)
         if kept is None or kept[0] != key:
-            kept = (key, judgement.judge(brief, plan, known))
+            kept = (key, judgement.judge(brief, plan, stored, failed=failed))
             self._judged[brief_id] = kept
         return kept[1]
 
@@ -271,7 +276,7 @@ class Session:
             brief=self.brief(brief_id),
             plan=plan,
             state=self.state(brief_id),
-            results=self._known(plan),
+            results=self._stored(plan),
             judgement=self.judge(brief_id),
             machine=self.machine(),
             versions=planning.versions(),

@@ -6,6 +6,7 @@ from pathlib import Path
 from plumbrule_core.documents.amounts import MB_PER_GB, memory
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.plan import Forecast, Machine, Plan, Task
+from plumbrule_core.engine.cache import KEEP_DAYS
 from plumbrule_core.exports import Record, words
 from plumbrule_core.exports.record_json import record_data
 from plumbrule_core.headless.asked import check_output, planned, write_json
@@ -67,8 +68,8 @@ def _number_of(session: Session, brief: Brief) -> int:
 
 
 def _left(session: Session, number: int, plan: Plan) -> tuple[Task, ...]:
-    """The tasks whose result the casebook does not hold yet."""
-    known = session.record(number).results
+    """The tasks that are to be computed: the casebook holds no result, or one that is not settled."""
+    known = {key for key, result in session.record(number).results.items() if result.settled}
     return tuple(task for task in plan.tasks if task.id not in known)
 
 
@@ -107,13 +108,28 @@ def _run(
 def _ending(outcome: str | None, record: Record, question: Path, casebook: Path | None) -> int:
     if outcome == "done":
         return ANSWERED
-    kept = f" --casebook {casebook}" if casebook is not None else ""
-    carry_on = f"`plumbrule run {question}{kept}` carries on"
+    carry_on = _carry_on(question, casebook)
     if outcome == "stopped":
-        say(f"stopped; what had finished is kept, and {carry_on}")
+        say(f"stopped; {carry_on}")
         return STOPPED
     for task_id, state in record.state.tasks.items():
         if state.state in ("failed", "died"):
             say(f"{record.plan.task(task_id).label} failed: {state.reason}")
-    say(f"at least one calculation failed; {carry_on} with what is missing")
+    say(f"at least one calculation failed; {carry_on}")
     return FAILED
+
+
+def _carry_on(question: Path, casebook: Path | None) -> str:
+    """What of the work is still there, and the command that goes on from it."""
+    if casebook is not None:
+        return (
+            f"the results that had finished are kept in {casebook}, and "
+            f"`plumbrule run {question} --casebook {casebook}` carries on with what is missing"
+        )
+    advised = question.with_suffix(".plumb")
+    return (
+        "without --casebook no result is kept; checkpoints of fields and amplitudes stay in the cache for "
+        f"up to {KEEP_DAYS} days, so that `plumbrule run {question}` goes on from them, but every step "
+        "without a checkpoint, as (T), starts again. To keep what finishes, run "
+        f"`plumbrule run {question} --casebook {advised}`"
+    )

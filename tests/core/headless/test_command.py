@@ -81,7 +81,7 @@ def test_the_energies_are_those_of_the_literature(tmp_path, book):
     assert molecule["atoms"] == [["H", 0.0, 0.0, 0.0], ["H", 0.0, 0.0, 0.7408481]]
     # Orbital energies -0.578 and 0.670 hartree: table 3.5 of the same book.
     assert molecule["orbitals"]["energies"] == pytest.approx([-0.578, 0.670], abs=5e-4)
-    assert read(out)["species"]["h2 atoms 1"]["energies"]["HF"] == pytest.approx(-0.4666, abs=5e-5)
+    assert read(out)["species"]["h2, atom 1"]["energies"]["HF"] == pytest.approx(-0.4666, abs=5e-5)
     # The bond energy of that level, 2 E(H) - E(H2), in kJ/mol with CODATA's 2625.4996 per hartree.
     assert read(out)["answer"]["value"] == pytest.approx((-2 * 0.4666 + 1.1373) * 2625.4996, abs=0.4)
 
@@ -233,6 +233,7 @@ def test_an_interrupt_ends_with_4_and_the_next_run_carries_on(tmp_path, water):
         rest = running.stderr.read()
         assert running.wait(30) == 4
         assert time.monotonic() - asked < 10
+    assert f"the results that had finished are kept in {book}" in rest
     assert "carries on" in rest
     assert "Traceback" not in heard + rest
     assert main(["show", str(book), "--json", str(out)]) == 0
@@ -255,6 +256,16 @@ def test_a_failed_calculation_ends_with_3_and_names_it(tmp_path, h2, capsys, mon
     assert "carries on" in said
     assert "error of the program" not in said
     assert "Traceback" not in said
+
+
+def test_without_a_casebook_a_failure_says_that_nothing_is_kept_and_how_to_keep_it(h2, capsys, monkeypatch):
+    monkeypatch.setattr(sys, "executable", "/nowhere/python")
+    assert main(["run", str(h2), "--threads", "1"]) == 3
+    said = capsys.readouterr().err
+    assert "without --casebook no result is kept" in said
+    assert "(T), starts again" in said
+    assert f"plumbrule run {h2} --casebook {h2.with_suffix('.plumb')}" in said
+    assert "had finished" not in said
 
 
 def test_doctor_finds_a_healthy_machine_and_proves_it_with_a_known_energy(tmp_path, capsys):

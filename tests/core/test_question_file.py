@@ -159,8 +159,8 @@ def test_a_syntax_fault_names_its_line(tmp_path):
     [
         (("h2 = -1 }", "h2 = -2 }"), "question.terms"),
         (("h2 = -1 }", "hydrogen = -1 }"), "question.terms.hydrogen"),
-        (('kind = "reaction"', 'kind = "magic"'), "question"),
-        (('kind = "reaction"\n', ""), "question"),
+        (('kind = "reaction"', 'kind = "magic"'), "question.kind"),
+        (('kind = "reaction"\n', ""), "question.kind"),
         (("within = 4.0\n", ""), "question.within"),
         (("within = 4.0", "within = nan"), "question.within"),
         (("within = 4.0", "within = 2024-01-01"), "question.within"),

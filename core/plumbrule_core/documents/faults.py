@@ -20,18 +20,29 @@ class Fault(Document):
 
 
 def faults_of(error: ValidationError, prefix: str = "") -> tuple[Fault, ...]:
-    """Every fault of a refused document in words, each with its key."""
+    """Every fault of a refused document in words, each with its key; entries of lists are counted from 1."""
     return tuple(Fault(where=_where(detail, prefix), says=_sentence(detail)) for detail in error.errors())
 
 
 def _where(detail: ErrorDetails, prefix: str) -> str:
-    return ".".join([*([prefix] if prefix else []), *(str(step) for step in detail["loc"])])
+    keys = (step for step in detail["loc"] if isinstance(step, str))
+    return ".".join([*([prefix] if prefix else []), *keys])
 
 
 def _sentence(detail: ErrorDetails) -> str:
     context: Mapping[str, Any] = detail.get("ctx") or {}
     say = _SENTENCES.get(detail["type"])
-    return say(context) if say else detail["msg"].removeprefix("Value error, ")
+    says = say(context) if say else detail["msg"].removeprefix("Value error, ")
+    entries = (f"entry {step + 1}" for step in detail["loc"] if isinstance(step, int))
+    return " ".join([*entries, says])
+
+
+def _entries(number: int) -> str:
+    return f"{number} {'entry' if number == 1 else 'entries'}"
+
+
+def _choices(expected: str) -> str:
+    return expected.replace("True", "true").replace("False", "false")
 
 
 _SENTENCES: Mapping[str, Callable[[Mapping[str, Any]], str]] = {
@@ -44,15 +55,15 @@ _SENTENCES: Mapping[str, Callable[[Mapping[str, Any]], str]] = {
     "bool_type": lambda c: "must be true or false",
     "finite_number": lambda c: "must be a finite number",
     "tuple_type": lambda c: "must be a list",
+    "mapping_type": lambda c: "must be a table",
     "dict_type": lambda c: "must be a table",
     "model_type": lambda c: "must be a table",
-    "literal_error": lambda c: f"must be one of {c['expected']}",
+    "literal_error": lambda c: f"must be {_choices(c['expected'])}",
     "greater_than": lambda c: f"must be more than {c['gt']}",
     "greater_than_equal": lambda c: f"must be {c['ge']} or more",
     "less_than_equal": lambda c: f"must be {c['le']} or less",
-    "too_short": lambda c: f"needs at least {c['min_length']} entries",
-    "too_long": lambda c: f"takes at most {c['max_length']} entries",
+    "too_short": lambda c: f"needs at least {_entries(c['min_length'])}",
+    "too_long": lambda c: f"takes at most {_entries(c['max_length'])}",
     "string_too_short": lambda c: "must not be empty",
-    "union_tag_invalid": lambda c: f"must be one of {c['expected_tags']}",
-    "union_tag_not_found": lambda c: "has no kind; say which kind of question this is",
+    "string_too_long": lambda c: f"must be {c['max_length']} letters at most",
 }

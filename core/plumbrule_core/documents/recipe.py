@@ -10,14 +10,16 @@ DensityFitting = Literal["auto", "yes", "no"]
 Reference = Literal["auto", "RHF", "UHF", "ROHF"]
 Core = Literal["frozen", "all"]
 Relativity = Literal["none", "X2C"]
-Correction = Literal["auto"] | bool
+Correction = Literal["auto", True, False]
 Text = Annotated[str, Field(min_length=1, max_length=80)]
 
 
 def _one_or_pair(value: object) -> object:
     if isinstance(value, str):
         return (value,)
-    return tuple(value) if isinstance(value, list) else value
+    if isinstance(value, list | tuple):
+        return tuple(value)
+    raise ValueError("must be text in quotes, or a list of two to extrapolate")
 
 
 class ActiveSpace(Document):

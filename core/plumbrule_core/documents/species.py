@@ -39,6 +39,8 @@ class Species(Document):
     charge: Annotated[int, Field(ge=-20, le=20)] = 0
     multiplicity: Annotated[int, Field(ge=1, le=40)] = 1
     origin: str = ""
+    assumed_multiplicity: int | None = None
+    """The multiplicity that was taken because nobody gave one; None where it was given."""
 
     @property
     def electrons(self) -> int:
@@ -51,13 +53,24 @@ class Species(Document):
         return self.multiplicity - 1
 
     @property
+    def assumption(self) -> str:
+        """Where the multiplicity is an assumption, that it is one, and how to state it; else empty."""
+        if self.assumed_multiplicity != self.multiplicity:
+            return ""
+        spin = SPIN_WORDS.get(self.multiplicity, f"multiplicity {self.multiplicity}")
+        return (
+            f"the multiplicity of {self.name} was not given, so {spin} was assumed "
+            f"(multiplicity = {self.multiplicity})"
+        )
+
+    @property
     def counts(self) -> Counter[str]:
         """How many atoms of each element."""
         return Counter(atom.symbol for atom in self.atoms)
 
     @property
     def formula(self) -> str:
-        """The formula in Hill order with the charge, as `C2H6O` or `OH-`."""
+        """The formula in Hill order with the charge, as `C2H6O` or `H3N³⁺`."""
         return hill(self.counts) + charge_text(self.charge)
 
     @property
@@ -99,11 +112,15 @@ def hill(counts: Counter[str]) -> str:
     return "".join(f"{symbol}{counts[symbol] if counts[symbol] > 1 else ''}" for symbol in order)
 
 
+RAISED = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
+
+
 def charge_text(charge: int) -> str:
-    """`+`, `2-` or nothing."""
+    """`⁺`, `²⁻` or nothing: raised, so that it is not taken for a number of atoms."""
     if charge == 0:
         return ""
-    return f"{abs(charge) if abs(charge) > 1 else ''}{'+' if charge > 0 else '-'}"
+    size = str(abs(charge)).translate(RAISED) if abs(charge) > 1 else ""
+    return f"{size}{'⁺' if charge > 0 else '⁻'}"
 
 
 SPIN_WORDS = {1: "singlet", 2: "doublet", 3: "triplet", 4: "quartet", 5: "quintet", 6: "sextet", 7: "septet"}

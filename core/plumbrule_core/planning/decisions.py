@@ -39,6 +39,7 @@ def notes(
     """The decisions in words: what was added, proposed, chosen and left out."""
     return (
         *_added(brief.recipe, rungs),
+        *_assumed(species),
         *_spin_states(brief, species),
         *_fitting(brief.recipe, species, fitting),
         *_active_space(brief.recipe),
@@ -50,6 +51,19 @@ def _added(recipe: Recipe, rungs: tuple[str, ...]) -> Iterator[str]:
     added = [name for name in rungs if name not in recipe.rungs]
     if added:
         yield f"{', '.join(added)} was added, because the rungs that were asked for stand on it."
+
+
+def _assumed(species: tuple[Species, ...]) -> Iterator[str]:
+    assumed = [f"{one.name} {_spin(one)}" for one in species if one.assumption]
+    if assumed:
+        yield (
+            f"Multiplicity was not given, so the likely ground state was assumed: {', '.join(assumed)}. "
+            "State it where that is not meant."
+        )
+
+
+def _spin(one: Species) -> str:
+    return spin_words(one.multiplicity).split(",")[0]
 
 
 def _spin_states(brief: Brief, species: tuple[Species, ...]) -> Iterator[str]:

@@ -1,7 +1,7 @@
 """One `[species.NAME]` table: where the atoms come from, charge and multiplicity."""
 
-import json
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from pathlib import Path
 from typing import Annotated, Any
 
@@ -12,8 +12,10 @@ from plumbrule_core.documents.base import Document
 from plumbrule_core.documents.faults import Fault, faults_of
 from plumbrule_core.documents.ground_states import ground_multiplicity
 from plumbrule_core.documents.species import Atom, Species
-from plumbrule_core.errors import Refused, Unreadable
+from plumbrule_core.errors import Unreadable
 from plumbrule_core.geometry import atom_lines, xyz
+from plumbrule_core.geometry.reading import Propose
+from plumbrule_core.question_file.tables import read_table
 
 SOURCES = ("geometry", "xyz", "smiles")
 
@@ -29,33 +31,36 @@ class SpeciesTable(Document):
     origin: Annotated[str, Field(max_length=1000)] | None = None
 
 
-def read_species(name: str, data: Any, folder: Path) -> Species:
-    """The species of one table; raises Refused with all that is wrong with it."""
+@dataclass(frozen=True, slots=True)
+class ReadSpecies:
+    """A species, or None where it could not be read, with all that is wrong with its table."""
+
+    species: Species | None = None
+    faults: tuple[Fault, ...] = ()
+
+
+def read_species(name: str, data: Any, folder: Path) -> ReadSpecies:
+    """The species of one table; every source is read, so that no fault hides another."""
     where = f"species.{name}"
-    table = _validated(data, where)
-    source = next(key for key in SOURCES if getattr(table, key) is not None)
-    try:
-        read = _molecules(table, name, folder)
-    except Unreadable as error:
-        lines = str(error).split("\n")
-        raise Refused(tuple(Fault(where=f"{where}.{source}", says=line) for line in lines)) from None
-    if len(read) != 1:
-        says = f"holds {len(read)} molecules; a species is one, so give each a file of its own"
-        raise _refused(f"{where}.{source}", says)
-    return _named(read[0], name, table)
-
-
-def _validated(data: Any, where: str) -> SpeciesTable:
     if not isinstance(data, dict):
-        raise _refused(where, "must be a table")
-    faults = _source_faults(data, where)
+        return ReadSpecies(faults=(Fault(where=where, says="must be a table"),))
+    read = read_table(SpeciesTable, data, where)
+    faults = [*_source_faults(data, where), *read.faults]
+    table = read.value or SpeciesTable()
+    found = []
+    for source in SOURCES:
+        if getattr(table, source) is not None:
+            try:
+                found.append(_molecule(source, table, name, folder))
+            except Unreadable as error:
+                faults += [Fault(where=f"{where}.{source}", says=line) for line in str(error).split("\n")]
+    if len(found) != 1 or read.spoilt:
+        return ReadSpecies(faults=tuple(faults))
     try:
-        table = SpeciesTable.model_validate_json(json.dumps(data))
+        species = _named(found[0], name, table)
     except ValidationError as error:
-        raise Refused((*faults, *faults_of(error, where))) from None
-    if faults:
-        raise Refused(faults)
-    return table
+        return ReadSpecies(faults=(*faults, *faults_of(error, where)))
+    return ReadSpecies(species, (*faults, *species.faults()))
 
 
 def _source_faults(data: Mapping[str, Any], where: str) -> tuple[Fault, ...]:
@@ -66,16 +71,29 @@ def _source_faults(data: Mapping[str, Any], where: str) -> tuple[Fault, ...]:
     return (Fault(where=where, says=f"give exactly one of geometry, xyz and smiles; {there}"),)
 
 
-def _molecules(table: SpeciesTable, name: str, folder: Path) -> tuple[Species, ...]:
-    """What the source holds; where it states no multiplicity, the proposal fits the charge of the table."""
+def _molecule(source: str, table: SpeciesTable, name: str, folder: Path) -> Species:
+    """What the source holds; where nobody states a multiplicity, the proposal is marked as assumed."""
+    assumed = []
 
     def propose(atoms: Sequence[Atom], charge: int) -> int:
+        assumed.append(True)
         return ground_multiplicity(atoms, charge if table.charge is None else table.charge)
 
-    if table.geometry is not None:
-        return geometry.read_file(folder / table.geometry, propose)
-    if table.smiles is not None:
-        return (geometry.from_smiles(table.smiles, name),)
+    read = _molecules(source, table, name, folder, propose)
+    if len(read) != 1:
+        raise Unreadable(f"holds {len(read)} molecules; a species is one, so give each a file of its own")
+    given = table.multiplicity is not None or (source != "smiles" and not assumed)
+    taken = None if given else read[0].multiplicity
+    return read[0].model_copy(update={"assumed_multiplicity": taken})
+
+
+def _molecules(
+    source: str, table: SpeciesTable, name: str, folder: Path, propose: Propose
+) -> tuple[Species, ...]:
+    if source == "geometry":
+        return geometry.read_file(folder / (table.geometry or ""), propose)
+    if source == "smiles":
+        return (geometry.from_smiles(table.smiles or "", name),)
     lines = table.xyz or ""
     if not (xyz.recognises(lines) or atom_lines.recognises(lines)):
         raise Unreadable(
@@ -94,17 +112,10 @@ def _named(read: Species, name: str, table: SpeciesTable) -> Species:
         "multiplicity": multiplicity,
         "origin": _origin(read, table),
     }
-    try:
-        return Species.from_data(data)
-    except ValidationError as error:
-        raise Refused(faults_of(error, f"species.{name}")) from None
+    return Species.from_data(data)
 
 
 def _origin(read: Species, table: SpeciesTable) -> str:
     if table.origin is not None:
         return table.origin
     return "given in the question file" if table.xyz is not None else read.origin
-
-
-def _refused(where: str, says: str) -> Refused:
-    return Refused((Fault(where=where, says=says),))

@@ -1,30 +1,27 @@
 """Reading a question file: every fault at once, each with the key or line it stands at."""
 
-import json
 import re
 import tomllib
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass
-from datetime import date, datetime, time
 from pathlib import Path
-from typing import Any, TypeVar
-
-from pydantic import TypeAdapter, ValidationError
+from typing import Any
 
 from plumbrule_core.documents.brief import Brief
-from plumbrule_core.documents.faults import Fault, faults_of
-from plumbrule_core.documents.questions import Question, QuestionBase
+from plumbrule_core.documents.faults import Fault
+from plumbrule_core.documents.questions import Question
 from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.documents.species import Species
 from plumbrule_core.errors import Refused
+from plumbrule_core.question_file.asking import Asked, read_asked
 from plumbrule_core.question_file.molecules import read_species
+from plumbrule_core.question_file.tables import read_table
 
 LARGEST_FILE = 20_000_000
 """Bytes; a question file is text that people write, so anything larger is some other file."""
 
+LISTS = ("basis", "rungs")
 SECTIONS = ("question", "species", "recipe")
-T = TypeVar("T")
-_QUESTION: TypeAdapter[Question] = TypeAdapter(Question)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -35,6 +32,7 @@ class Draft:
     question: Question | None = None
     species: tuple[Species, ...] = ()
     recipe: Recipe | None = None
+    """Where there are faults, question and recipe hold stand-ins for what is wrong."""
     faults: tuple[Fault, ...] = ()
 
     def brief(self) -> Brief:
@@ -118,87 +116,53 @@ class _Reading:
             if key not in SECTIONS:
                 says = "is not a key that is known here; there is [question], [species.NAME] and [recipe]"
                 self._add(key, says)
-        title, question = self._question()
+        title, asked = self._question()
         named, species = self._species()
-        recipe = self._read("recipe", Recipe.model_validate_json, self._data.get("recipe", {}))
-        self._faults.extend(fault for one in species for fault in one.faults())
-        if question is not None:
-            self._faults.extend(_question_faults(question, named, species))
+        recipe = self._recipe()
+        self._faults.extend(asked.faults_among(named, {one.name: one for one in species}))
         return Draft(
-            title=title, question=question, species=species, recipe=recipe, faults=tuple(self._faults)
+            title=title, question=asked.question, species=species, recipe=recipe, faults=tuple(self._faults)
         )
 
     def _add(self, where: str, says: str) -> None:
         self._faults.append(Fault(where=where, says=says))
 
-    def _read(self, where: str, validate: Callable[[str], T], data: object) -> T | None:
-        try:
-            return validate(json.dumps(_plain(data, where)))
-        except ValidationError as error:
-            self._faults.extend(_without_tag(fault, data) for fault in faults_of(error, where))
-        except Refused as refused:
-            self._faults.extend(_faults(refused))
-        return None
-
-    def _question(self) -> tuple[str, Question | None]:
+    def _question(self) -> tuple[str, Asked]:
         if "question" not in self._data:
             self._add("question", "is missing: a file needs a [question] table that says what to find out")
-            return "", None
+            return "", Asked()
         table = self._data["question"]
         if not isinstance(table, dict):
             self._add("question", "must be a table")
-            return "", None
+            return "", Asked()
         title = table.get("title", "")
         if not isinstance(title, str) or len(title) > 200:
             self._add("question.title", "must be text in quotes, 200 letters at most")
             title = ""
-        asked = {key: value for key, value in table.items() if key != "title"}
-        return title, self._read("question", _QUESTION.validate_json, asked)
+        asked = read_asked({key: value for key, value in table.items() if key != "title"})
+        self._faults.extend(asked.faults)
+        return title, asked
 
     def _species(self) -> tuple[frozenset[str], tuple[Species, ...]]:
         tables = self._data.get("species", {})
         if not isinstance(tables, dict):
             self._add("species", "must be tables, one for each species: [species.water]")
             return frozenset(), ()
-        found = []
-        for name, table in tables.items():
-            try:
-                found.append(read_species(name, _plain(table, f"species.{name}"), self._folder))
-            except Refused as refused:
-                self._faults.extend(_faults(refused))
-        return frozenset(tables), tuple(found)
+        read = [read_species(name, table, self._folder) for name, table in tables.items()]
+        self._faults.extend(fault for one in read for fault in one.faults)
+        return frozenset(tables), tuple(one.species for one in read if one.species is not None)
+
+    def _recipe(self) -> Recipe | None:
+        """The recipe; where basis or rungs are at fault, with the names there, to be judged as well."""
+        data = self._data.get("recipe", {})
+        if not isinstance(data, dict):
+            self._add("recipe", "must be a table")
+            return None
+        read = read_table(Recipe, data, "recipe")
+        self._faults.extend(read.faults)
+        spoilt: dict[str, Any] = {key: _names(data[key]) for key in LISTS if key in read.spoilt}
+        return read.value.model_copy(update=spoilt) if read.value is not None else None
 
 
-def _question_faults(
-    question: QuestionBase, named: frozenset[str], species: tuple[Species, ...]
-) -> tuple[Fault, ...]:
-    """The question's own faults; a species that is there but could not be read is not called missing."""
-    read = {one.name: one for one in species}
-    unread = named - set(read)
-    if unread and any(name in unread for _, name in question.named()):
-        there = tuple((key, name) for key, name in question.named() if name not in named)
-        return tuple(
-            Fault(where=f"question.{key}", says=f"there is no species named '{name}'") for key, name in there
-        )
-    vague = bool(unread) and question.built and not question.named()
-    return () if vague else question.faults(read)
-
-
-def _without_tag(fault: Fault, data: object) -> Fault:
-    """`question.bond.species` as `question.species`: the kind is no part of the key."""
-    kind = data.get("kind") if isinstance(data, dict) else None
-    where = fault.where.replace(f"question.{kind}", "question", 1) if isinstance(kind, str) else fault.where
-    return Fault(where=where, says=fault.says)
-
-
-def _plain(value: object, where: str) -> Any:
-    """TOML values as JSON has them; raises Refused for a whole number that TOML itself does not allow."""
-    if isinstance(value, dict):
-        return {key: _plain(one, f"{where}.{key}") for key, one in value.items()}
-    if isinstance(value, list):
-        return [_plain(one, f"{where}.{place}") for place, one in enumerate(value)]
-    if isinstance(value, (datetime, date, time)):
-        raise _refused(where, "is a date or a time, which has no meaning here")
-    if isinstance(value, int) and abs(value) >= 2**63:
-        raise _refused(where, "is too large a number")
-    return value
+def _names(value: object) -> tuple[str, ...]:
+    return tuple(one for one in value if isinstance(one, str)) if isinstance(value, list) else ()

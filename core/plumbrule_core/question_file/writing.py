@@ -11,7 +11,10 @@ from plumbrule_core.documents.species import Species
 
 
 def write_question(brief: Brief) -> str:
-    """The question file of a brief; reading it back gives an equal brief."""
+    """The question file of a brief; reading it back gives an equal brief.
+
+    A multiplicity that was assumed is written out, so that every version computes the same.
+    """
     sections = (_question(brief), *(_species(one) for one in brief.species), *_recipe(brief.recipe))
     return "\n\n".join("\n".join(section) for section in sections if section) + "\n"
 
@@ -27,7 +30,8 @@ def _species(species: Species) -> list[str]:
     return [
         f"[species.{_key(species.name)}]",
         f'xyz = """\n{lines}\n"""',
-        *_pairs({"charge": species.charge, "multiplicity": species.multiplicity}),
+        f"charge = {species.charge}",
+        f"multiplicity = {species.multiplicity}{'  # not given; assumed' if species.assumption else ''}",
         *_pairs({"origin": species.origin} if species.origin else {}),
     ]
 

@@ -97,7 +97,7 @@ def test_the_molecule_of_a_single_atom_pair_splits_into_ground_state_atoms():
 
 def test_a_spin_gap_needs_two_spins_of_the_same_atoms():
     same = ask(kind="spin gap", low="dioxygen", high="dioxygen")
-    assert "same multiplicity" in says(same)[0]
+    assert "are both triplets" in says(same)[0]
     other = ask(kind="spin gap", low="water", high="dioxygen")
     assert "do not hold the same atoms" in says(other)[0]
 
@@ -171,7 +171,29 @@ def test_an_edit_changes_what_its_path_names_and_nothing_else():
 
 def test_an_edit_that_makes_no_valid_brief_is_refused_with_the_key():
     brief = Brief(species=(WATER,))
-    with pytest.raises(Refused, match=r"recipe\.core: must be one of"):
+    with pytest.raises(Refused, match=r"recipe\.core: must be 'frozen' or 'all'"):
         edited(brief, [Edit(path="recipe.core", value="half")])
     with pytest.raises(Refused, match="no species named 'methane'"):
         edited(brief, [Edit(path="species.methane.charge", value=1)])
+
+
+def test_a_fragment_is_named_by_the_numbers_of_its_atoms():
+    asked = ask(kind="bond", species="peroxide", cut=[1, 2])
+    names = [part.species.name for part in asked.parts(MANY)]
+    assert names == ["peroxide, atoms 1 and 3", "peroxide, atoms 2 and 4", "peroxide"]
+    # Methanol with its hydroxyl last: C and three H in a row, then O and H.
+    methanol = species(
+        "methanol",
+        *(("C", 0, 0, 0), ("H", 1.03, 0, -0.36), ("H", -0.51, 0.89, -0.36), ("H", -0.51, -0.89, -0.36)),
+        *(("O", 0, 0, 1.42), ("H", 0.9, 0, 1.74)),
+    )
+    parts = ask(kind="bond", species="methanol", cut=[1, 5]).parts({"methanol": methanol})
+    assert [part.species.name for part in parts[:2]] == ["methanol, atoms 1-4", "methanol, atoms 5 and 6"]
+
+
+def test_two_fragments_alike_are_one_species_at_one_place():
+    pair = Species(name="f2", atoms=(Atom(symbol="F", x=1, y=2, z=3), Atom(symbol="F", x=1, y=2, z=4.41)))
+    asked = ask(kind="bond", species="f2", cut=[1, 2])
+    first, second, _ = asked.parts({"f2": pair})
+    assert first == second
+    assert first.species.name == "f2, atom 1"

@@ -33,7 +33,19 @@ def test_water_has_ten_electrons_and_its_formula_in_hill_order():
     water = Species(name="water", atoms=WATER)
     assert water.electrons == 10
     assert water.formula == "H2O"
-    assert Species(name="hydroxide", atoms=WATER[:2], charge=-1).formula == "HO-"
+    assert Species(name="hydroxide", atoms=WATER[:2], charge=-1).formula == "HO⁻"
+
+
+def test_a_charge_in_a_formula_cannot_be_taken_for_a_number_of_atoms():
+    assert Species(name="x", atoms=WATER, charge=20).formula == "H2O²⁰⁺"
+    assert Species(name="x", atoms=WATER, charge=-2).formula == "H2O²⁻"
+
+
+def test_an_assumed_multiplicity_is_said_and_changes_no_content():
+    one = Species(name="CH2", atoms=WATER, multiplicity=3, assumed_multiplicity=3)
+    assert "multiplicity of CH2 was not given, so triplet was assumed" in one.assumption
+    assert one.content == Species(name="CH2", atoms=WATER, multiplicity=3).content
+    assert not one.model_copy(update={"multiplicity": 1}).assumption
 
 
 def test_a_multiplicity_of_the_wrong_parity_is_refused_with_those_that_fit():

@@ -42,7 +42,7 @@ def refusal(text: str) -> list[str]:
 def test_a_cml_molecule_is_read_with_charge_and_multiplicity(tmp_path):
     (tmp_path / "oh.cml").write_text(CML)
     (species,) = read_file(tmp_path / "oh.cml")
-    assert (species.name, species.formula, species.multiplicity) == ("oh", "HO-", 1)
+    assert (species.name, species.formula, species.multiplicity) == ("oh", "HO⁻", 1)
     assert species.atoms[1].z == 0.964
     assert read_text(CML)[0].name == "hydroxide"
 

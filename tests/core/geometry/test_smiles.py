@@ -12,8 +12,8 @@ from plumbrule_core.geometry import from_smiles, read_file, read_text
     [
         ("O", "H2O", 1),
         ("CCO", "C2H6O", 1),
-        ("[OH-]", "HO-", 1),
-        ("[NH4+]", "H4N+", 1),
+        ("[OH-]", "HO⁻", 1),
+        ("[NH4+]", "H4N⁺", 1),
         ("[OH]", "HO", 2),
         ("C[CH2]", "C2H5", 2),
         ("[CH2]", "CH2", 3),

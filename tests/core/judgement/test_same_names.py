@@ -52,17 +52,17 @@ def test_a_cut_of_a_molecule_with_a_long_name_leaves_two_fragments_with_their_ow
     names = [one.name for one in found.species]
     assert len(set(names)) == len(names) == 3
     assert all(len(name) <= 80 for name in names)
-    assert [name[-8:] for name in names[:2]] == [" atoms 1", " atoms 2"]
+    assert [name[-8:] for name in names[:2]] == [", atom 1", ", atom 2"]
 
 
 def test_a_species_that_has_the_name_of_a_fragment_keeps_its_own_energy_and_the_fragment_its_note() -> None:
     oxygen = Molecule(xyz="O 0 0 0", multiplicity=1)
-    brief = cut("co", oxygen, names=("co atoms 2",))
+    brief = cut("co", oxygen, names=("co, atom 2",))
     found = answered(brief)
     assert found.answer is not None
     assert abs(found.answer.value - from_hartree(113.0 - 37.7 - 74.8, "kJ/mol")) < 1e-6
     notes = make_plan(brief, Machine(cores=1, memory_mb=4000.0, disk_mb=1e5)).notes
-    assert any("co atoms 2 (O) is taken as triplet" in note for note in notes)
+    assert any("co, atom 2 (O) is taken as triplet" in note for note in notes)
 
 
 def test_two_species_of_one_name_have_two_views() -> None:
@@ -82,5 +82,5 @@ def test_a_fragment_of_many_atoms_is_told_from_the_other_by_its_first_atom() -> 
     )
     assert brief.question is not None
     first, second, _ = (part.species.name for part in brief.question.parts(brief.by_name))
-    assert first.endswith(" atoms from 1, 30 in all")
-    assert second.endswith(" atoms from 31, 30 in all")
+    assert first.endswith(", atoms 1-30")
+    assert second.endswith(", atoms 31-60")

@@ -1,6 +1,8 @@
 """The kinds of question; this list is the one place where a new kind is registered."""
 
-from typing import Annotated
+from collections.abc import Mapping
+from types import MappingProxyType
+from typing import Annotated, get_args
 
 from pydantic import Field
 
@@ -30,7 +32,13 @@ Question = Annotated[
     Field(discriminator="kind"),
 ]
 
+KINDS: Mapping[str, type[Question]] = MappingProxyType(
+    {kind.model_fields["kind"].default: kind for kind in get_args(get_args(Question)[0])}
+)
+"""Every kind by the name that a question file gives it."""
+
 __all__ = [
+    "KINDS",
     "BarrierQuestion",
     "BindingQuestion",
     "BondQuestion",

@@ -1,7 +1,7 @@
 """What every kind of question can say about itself."""
 
 from abc import abstractmethod
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from typing import Annotated, ClassVar
 
 from pydantic import Field
@@ -41,6 +41,12 @@ class QuestionBase(Document):
     within: Annotated[float, Field(gt=0)]
     unit: EnergyUnit = "kJ/mol"
 
+    @classmethod
+    def not_built(cls) -> Fault:
+        """What to say of a kind that is not built yet."""
+        says = f"a {cls.label} is understood, but not built yet in this version"
+        return Fault(where="question.kind", says=says)
+
     @abstractmethod
     def named(self) -> tuple[tuple[str, str], ...]:
         """The names of the species it stands on, each with the key it stands at (`terms.water`)."""
@@ -55,18 +61,26 @@ class QuestionBase(Document):
 
     def faults(self, species: Many) -> tuple[Fault, ...]:
         """All that is wrong, in words, with the key; empty when it can be asked."""
-        missing = tuple(
-            Fault(
-                where=f"question.{key}",
-                says=f"there is no species named '{name}'; there is {_names(species)}",
-            )
+        early = self.early_faults(species)
+        known = all(name in species for _, name in self.named())
+        return (*early, *self.own_faults(species)) if known else early
+
+    def early_faults(self, names: Collection[str]) -> tuple[Fault, ...]:
+        """What is wrong whatever the species are, of which no more than the names are known."""
+        there = f"there is {', '.join(sorted(names)) or 'none yet'}"
+        missing = (
+            Fault(where=f"question.{key}", says=f"there is no species named '{name}'; {there}")
             for key, name in self.named()
-            if name not in species
+            if name not in names
         )
-        return missing or self.own_faults(species)
+        return (*self.value_faults(names), *missing)
+
+    def value_faults(self, names: Collection[str]) -> tuple[Fault, ...]:
+        """Faults of this kind that its own values show; `names` are those of the species."""
+        return ()
 
     def own_faults(self, species: Many) -> tuple[Fault, ...]:
-        """Faults of this kind alone, once every named species exists."""
+        """Faults of this kind that its species show, once every named one exists."""
         return ()
 
     def sentence(self, species: Many) -> tuple[Clause, ...]:
@@ -78,10 +92,6 @@ class QuestionBase(Document):
             Clause(text=", within "),
             Clause(text=f"{self.within:g} {self.unit}", key="within"),
         )
-
-
-def _names(species: Many) -> str:
-    return ", ".join(sorted(species)) or "none yet"
 
 
 def unbalanced(left: tuple[Species, ...], right: tuple[Species, ...], where: str) -> tuple[Fault, ...]:

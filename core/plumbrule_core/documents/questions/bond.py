@@ -94,10 +94,12 @@ class BondQuestion(QuestionBase):
         return tuple(sorted(sides, key=lambda side: first - 1 not in side))
 
     def _cut_species(self, whole: Species) -> tuple[Species, ...]:
-        return tuple(
+        """The fragments; two atoms alike are one species, so that they are computed and judged once."""
+        cut = tuple(
             _fragment(whole, side, (self.fragment_multiplicities or (None, None))[place])
             for place, side in enumerate(self._sides(whole))
         )
+        return tuple({part.content: part for part in reversed(cut)}[part.content] for part in cut)
 
     def parts(self, species: Many) -> tuple[Part, ...]:
         """Both fragments minus the molecule."""

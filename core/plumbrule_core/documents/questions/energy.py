@@ -1,5 +1,6 @@
 """The total energy of one species."""
 
+from collections.abc import Collection
 from typing import ClassVar, Literal
 
 from plumbrule_core.documents.faults import Fault
@@ -19,11 +20,14 @@ class EnergyQuestion(QuestionBase):
         """The species, where it is named."""
         return (("species", self.species),) if self.species else ()
 
-    def own_faults(self, species: Many) -> tuple[Fault, ...]:
+    def value_faults(self, names: Collection[str]) -> tuple[Fault, ...]:
         """Not saying which of several species is meant."""
-        if self.species or len(species) == 1:
+        if self.species or len(names) == 1:
             return ()
-        return (Fault(where="question.species", says=f"say which of the {len(species)} species is meant"),)
+        if not names:
+            return (Fault(where="species", says="there is none yet; add one as [species.water]"),)
+        says = f"say which of the {len(names)} species is meant: {', '.join(sorted(names))}"
+        return (Fault(where="question.species", says=says),)
 
     def parts(self, species: Many) -> tuple[Part, ...]:
         """The energy itself."""

@@ -1,5 +1,6 @@
 """Kinds that can be read but not answered yet: barrier, binding, curve, survey."""
 
+from collections.abc import Collection
 from typing import Annotated, ClassVar, Literal, Self
 
 from pydantic import Field, model_validator
@@ -20,13 +21,9 @@ class NotBuiltYet(QuestionBase):
         """Nothing is looked up for a question that cannot be answered."""
         return ()
 
-    def own_faults(self, species: Many) -> tuple[Fault, ...]:
+    def value_faults(self, names: Collection[str]) -> tuple[Fault, ...]:
         """The one fault: not built yet."""
-        return (
-            Fault(
-                where="question.kind", says=f"a {self.label} is understood, but not built yet in this version"
-            ),
-        )
+        return (self.not_built(),)
 
     def parts(self, species: Many) -> tuple[Part, ...]:
         """Never asked for, since there is always a fault."""

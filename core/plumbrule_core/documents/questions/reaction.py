@@ -1,6 +1,6 @@
 """The energy of a reaction: a sum of coefficient times energy, products positive."""
 
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from typing import Annotated, ClassVar, Literal
 
 from pydantic import Field
@@ -25,14 +25,17 @@ class ReactionQuestion(QuestionBase):
         """Every species of the sum."""
         return tuple((f"terms.{name}", name) for name in self.terms)
 
-    def own_faults(self, species: Many) -> tuple[Fault, ...]:
-        """Coefficients of zero, atoms or charge that do not balance."""
-        zero = tuple(
+    def value_faults(self, names: Collection[str]) -> tuple[Fault, ...]:
+        """Coefficients of zero."""
+        return tuple(
             Fault(where=f"question.terms.{name}", says="a coefficient of 0 leaves the species out; remove it")
             for name, coefficient in self.terms.items()
             if coefficient == 0
         )
-        return zero + self._atoms_out_of_balance(species) + self._charge_out_of_balance(species)
+
+    def own_faults(self, species: Many) -> tuple[Fault, ...]:
+        """Atoms or charge that do not balance."""
+        return self._atoms_out_of_balance(species) + self._charge_out_of_balance(species)
 
     def _atoms_out_of_balance(self, species: Many) -> tuple[Fault, ...]:
         symbols = sorted({symbol for name in self.terms for symbol in species[name].counts})

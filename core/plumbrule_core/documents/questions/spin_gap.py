@@ -4,6 +4,12 @@ from typing import ClassVar, Literal
 
 from plumbrule_core.documents.faults import Fault
 from plumbrule_core.documents.questions.base import Clause, Many, Part, QuestionBase, unbalanced
+from plumbrule_core.documents.species import SPIN_WORDS, Species
+
+
+def _many(one: Species) -> str:
+    word = SPIN_WORDS.get(one.multiplicity)
+    return f"{word}s" if word else f"of multiplicity {one.multiplicity}"
 
 
 class SpinGapQuestion(QuestionBase):
@@ -27,7 +33,8 @@ class SpinGapQuestion(QuestionBase):
         if low.charge != high.charge:
             off += (Fault(where="question.high", says=f"{low.name} and {high.name} have different charges"),)
         if low.multiplicity == high.multiplicity:
-            says = f"{low.name} and {high.name} have the same multiplicity; a spin gap needs two"
+            says = f"{low.name} and {high.name} are both {_many(low)}; a spin gap needs two spin states"
+            says += "".join(f"; {one.assumption}" for one in (low, high) if one.assumption)
             off += (Fault(where="question.high", says=says),)
         return off
 

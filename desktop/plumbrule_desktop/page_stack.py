@@ -1,14 +1,23 @@
 """The four pages in one stack, each made when it is first wanted."""
 
 from collections.abc import Callable
+from importlib import import_module
 
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QStackedWidget, QWidget
 
 from plumbrule_desktop.scene.three_d import ThreeD
+from plumbrule_desktop.state.clerk import Clerk
 from plumbrule_desktop.state.desk import Desk
 
 PAGES = ("build", "watch", "judge", "report")
+_HOMES = {
+    "build": ("plumbrule_desktop.pages.build.page", "BuildPage"),
+    "watch": ("plumbrule_desktop.pages.watch", "WatchPage"),
+    "judge": ("plumbrule_desktop.pages.judge", "JudgePage"),
+    "report": ("plumbrule_desktop.pages.report", "ReportPage"),
+}
+"""Module and class of each page."""
 
 
 class PageStack(QStackedWidget):
@@ -23,6 +32,7 @@ class PageStack(QStackedWidget):
         super().__init__(parent)
         self.desk = desk
         self.three_d = three_d
+        self._clerk = Clerk("plumbrule-pages", self)
         self.made: dict[str, QWidget] = {}
         self._empty = {name: QWidget() for name in PAGES}
         for empty in self._empty.values():
@@ -31,13 +41,28 @@ class PageStack(QStackedWidget):
     def page(self, name: str) -> QWidget:
         """The page of that name, made now where it is not there yet."""
         if name not in self.made:
-            page = _MAKE[name](self)
+            page = self._make(name)
             self.made[name] = page
             for asked in ("page_wanted", "demo_wanted"):
                 if hasattr(page, asked):
                     getattr(page, asked).connect(getattr(self, asked))
             self._put(page, PAGES.index(name), self._empty.pop(name))
         return self.made[name]
+
+    def fetch(self, name: str, then: Callable[[], None]) -> None:
+        """Import in a thread what the page needs, make the page, and call `then`."""
+
+        def make(_: object) -> None:
+            self.page(name)
+            then()
+
+        self._clerk.do(lambda: import_module(_HOMES[name][0]), make)
+
+    def _make(self, name: str) -> QWidget:
+        module, kind = _HOMES[name]
+        given = (self.desk, self.three_d) if name == "build" else (self.desk,)
+        made: QWidget = getattr(import_module(module), kind)(*given)
+        return made
 
     def _put(self, page: QWidget, place: int, empty: QWidget) -> None:
         current = self.currentIndex()
@@ -48,37 +73,6 @@ class PageStack(QStackedWidget):
 
     def close_pages(self) -> None:
         """Let every page give back what it holds."""
+        self._clerk.close()
         for page in self.made.values():
             page.close()
-
-
-def _build(stack: PageStack) -> QWidget:
-    from plumbrule_desktop.pages.build.page import BuildPage
-
-    return BuildPage(stack.desk, stack.three_d)
-
-
-def _watch(stack: PageStack) -> QWidget:
-    from plumbrule_desktop.pages.watch import WatchPage
-
-    return WatchPage(stack.desk)
-
-
-def _judge(stack: PageStack) -> QWidget:
-    from plumbrule_desktop.pages.judge import JudgePage
-
-    return JudgePage(stack.desk)
-
-
-def _report(stack: PageStack) -> QWidget:
-    from plumbrule_desktop.pages.report import ReportPage
-
-    return ReportPage(stack.desk)
-
-
-_MAKE: dict[str, Callable[[PageStack], QWidget]] = {
-    "build": _build,
-    "watch": _watch,
-    "judge": _judge,
-    "report": _report,
-}

@@ -1,7 +1,6 @@
 """The window: the shell at once, the pages after the first paint, and an orderly end."""
 
-from collections.abc import Callable, Iterator
-from functools import partial
+from collections.abc import Callable
 from pathlib import Path
 
 from PySide6.QtCore import QEvent, QObject, Qt, QTimer
@@ -51,10 +50,10 @@ class Window(QMainWindow):
         self.banner = Banner()
         self.question_line = QuestionLine(self.desk)
         self.segments = Segments((name.capitalize() for name in PAGES), "Pages")
+        self.leaving = Leaving(self, self.desk, self.ask_save)
         self.stack = PageStack(self.desk, self.three_d)
         self.stack.page_wanted.connect(lambda name: self.show_page(PAGES.index(name)))
         self.stack.demo_wanted.connect(lambda: self.leaving.replace(self.desk.open_demo))
-        self.leaving = Leaving(self, self.desk, self.ask_save)
         self.plumb_line = PlumbLine(self.desk)
         self._compose()
         self.actions_by_key = make_actions(self, self._slots())
@@ -145,18 +144,22 @@ class Window(QMainWindow):
         if event.type() == QEvent.Type.Paint and not self._painted:
             self._painted = True
             watched.removeEventFilter(self)
-            make: list[Callable[[], object]] = [partial(self.stack.page, name) for name in PAGES]
-            begin = partial(self._begin, self.desk)
-            stages: list[Callable[[], object]] = [make[0], begin, *make[1:], self.three_d.ask]
-            self._stages: Iterator[Callable[[], object]] = iter(stages)
-            QTimer.singleShot(0, self, self._next_stage)
+            self._wanted_pages = iter(PAGES)
+            QTimer.singleShot(0, self, self._furnish)
         return super().eventFilter(watched, event)
 
-    def _next_stage(self) -> None:
-        stage = next(self._stages, None)
-        if stage is not None and not self._ended:
-            stage()
-            QTimer.singleShot(0, self, self._next_stage)
+    def _furnish(self) -> None:
+        """Make the next page; behind the last one ask for 3-D."""
+        name = None if self._ended else next(self._wanted_pages, None)
+        if name is not None:
+            self.stack.fetch(name, lambda: self._page_came(name))
+        elif not self._ended:
+            self.three_d.ask()
+
+    def _page_came(self, name: str) -> None:
+        if name == PAGES[0]:
+            self._begin(self.desk)
+        QTimer.singleShot(0, self, self._furnish)
 
     @property
     def pages(self) -> dict[str, QWidget]:

@@ -1,8 +1,10 @@
-"""The readings of every species with the threshold that a finding held them against."""
+"""The readings of every species beside their limits, and what a finding made of them."""
 
+from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.findings import Evidence, Finding, Judgement
 from plumbrule_core.documents.results import Reading, ReadingValue
 from plumbrule_core.documents.run_state import TaskState
+from plumbrule_core.documents.species import Species
 from plumbrule_desktop.plots.series import Numbers
 from plumbrule_desktop.state.amounts import MINUS
 
@@ -55,10 +57,10 @@ def value_words(value: ReadingValue | str, unit: str = "") -> str:
     return f"{shown}{more}{behind}"
 
 
-def readings_table(judgement: Judgement) -> Numbers:
-    """One row for each reading of each species; what a finding said of it stands beside it."""
+def readings_table(brief: Brief, judgement: Judgement) -> Numbers:
+    """One row for each reading of each species: its limit, passed or not, and what a finding said of it."""
     rows = tuple(
-        _row(species.name, reading, judgement.findings)
+        _row(species.name, reading, judgement.findings, brief.by_name.get(species.name))
         for species in judgement.species
         for reading in species.readings
     )
@@ -71,14 +73,27 @@ def task_readings(task: TaskState) -> Numbers:
     return Numbers(("Reading", "Value"), rows)
 
 
-def _row(species: str, reading: Reading, findings: tuple[Finding, ...]) -> tuple[str, ...]:
+def _row(
+    species: str, reading: Reading, findings: tuple[Finding, ...], molecule: Species | None
+) -> tuple[str, ...]:
     held = _held_against(species, reading.name, findings)
-    limit, meaning = "", ""
+    limit, meaning = limit_words(reading.name, molecule), ""
     if held is not None:
         finding, evidence = held
-        limit = "" if evidence.threshold is None else value_words(evidence.threshold, evidence.unit)
+        limit = limit if evidence.threshold is None else value_words(evidence.threshold, evidence.unit)
         meaning = finding.headline
     return (species, reading_name(reading.name), value_words(reading.value, reading.unit), limit, meaning)
+
+
+def limit_words(reading: str, molecule: Species | None) -> str:
+    """`0.02`, or `at least 5 eV` where the reading should stay above; empty where there is no limit."""
+    from plumbrule_core.session import reading_limit  # loaded by the desk long before anything is judged
+
+    limit = None if molecule is None else reading_limit(reading, molecule)
+    if limit is None:
+        return ""
+    value, unit, below = limit
+    return value_words(value, unit) if below else f"at least {value_words(value, unit)}"
 
 
 def _held_against(species: str, name: str, findings: tuple[Finding, ...]) -> tuple[Finding, Evidence] | None:

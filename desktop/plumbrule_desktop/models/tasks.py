@@ -186,7 +186,8 @@ class TaskModel(QAbstractItemModel):
 
     def index(self, row: int, column: int, parent: Index = QModelIndex()) -> QModelIndex:  # noqa: B008
         """The place of a cell; the internal id is 0 for a chain, else the chain's number from 1."""
-        if not self.hasIndex(row, column, parent):
+        # the answers of `hasIndex`, without its two calls back into this model for every cell
+        if not (0 <= row < self.rowCount(parent) and 0 <= column < len(HEADER)):
             return QModelIndex()
         return self.createIndex(row, column, parent.row() + 1 if parent.isValid() else 0)
 

@@ -73,7 +73,7 @@ class BudgetView(QWidget):
 
 
 class ReadingsView(QWidget):
-    """Every reading of every species with the limit that a finding held it against."""
+    """Every reading of every species beside its limit."""
 
     title = "Readings"
 
@@ -86,7 +86,7 @@ class ReadingsView(QWidget):
 
     def show_judgement(self, brief: Brief, judgement: Judgement) -> None:
         """Show the readings."""
-        fresh = readings_table(judgement)
+        fresh = readings_table(brief, judgement)
         another = fresh.header != self.model.numbers.header
         self.model.show(fresh)
         if another or fresh.rows:

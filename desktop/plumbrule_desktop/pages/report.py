@@ -22,6 +22,7 @@ class ReportPage(QWidget):
         super().__init__(parent)
         self._desk = desk
         self._turn = 0
+        self._shown = ""
         self.browser = ReportBrowser()
         self.caution = label(HAZARD)
         self.empty = label("", "muted")
@@ -68,8 +69,9 @@ class ReportPage(QWidget):
         self._desk.report(lambda html: self._show(html, turn))
 
     def _show(self, html: str, turn: int) -> None:
-        if turn != self._turn:
+        if turn != self._turn or html == self._shown:
             return
+        self._shown = html
         place = self.browser.verticalScrollBar().value()
         self.browser.setHtml(html)
         self.browser.verticalScrollBar().setValue(place)

@@ -68,8 +68,11 @@ class WatchPage(QWidget):
         self._moved()
 
     def _prepare(self) -> None:
-        """Do now what would hold up the window when the page is first shown during a run."""
+        """Do now, in two pieces, what would hold up the window when the page is first shown during a run."""
         self.task.prepare()
+        QTimer.singleShot(0, self, self._polish)
+
+    def _polish(self) -> None:
         self._refresh()
         for part in self.findChildren(QWidget):
             part.ensurePolished()

@@ -36,8 +36,7 @@ class _Track:
 
     def __init__(self, layout: pg.GraphicsLayoutWidget, row: int, symbol: str, title: str) -> None:
         self._title = title
-        self.plot = layout.addPlot(row=row, col=0, axisItems={"left": PowerAxis("left")})
-        self.plot.setMenuEnabled(False)
+        self.plot = layout.addPlot(row=row, col=0, axisItems={"left": PowerAxis("left")}, enableMenu=False)
         self.plot.setMouseEnabled(False, False)
         self.plot.hideButtons()
         self.plot.disableAutoRange()

@@ -47,6 +47,8 @@ class Kept(QObject):
         self._entries: tuple[Entry, ...] = ()
         self._brief_id: int | None = None
         self._brief = Brief()
+        self._weighed: Brief | None = None
+        self._own_faults: tuple[Fault, ...] = ()
         self._generation = 0
         self._fresh = True
         self._forget()
@@ -107,8 +109,9 @@ class Kept(QObject):
     @property
     def faults(self) -> tuple[Fault, ...]:
         """All that keeps the question from being run: seen at once, or by the planner."""
-        own = self._brief.faults()
-        later = self._plan.faults if self._plan else ()
+        if self._weighed is not self._brief:
+            self._weighed, self._own_faults = self._brief, self._brief.faults()
+        own, later = self._own_faults, self._plan.faults if self._plan else ()
         return (*own, *(fault for fault in later if fault not in own))
 
     # bringing what is kept up to date

@@ -14,11 +14,13 @@ class FlowLayout(QLayout):
         self._items: list[QLayoutItem] = []
         self._gap = spacing
         self._line_gap = spacing if line_spacing is None else line_spacing
+        self._heights: dict[int, int] = {}
         self.setContentsMargins(0, 0, 0, 0)
 
     def addItem(self, item: QLayoutItem) -> None:
         """Take an item at the end."""
         self._items.append(item)
+        self.invalidate()
 
     def count(self) -> int:
         """How many items there are."""
@@ -42,7 +44,14 @@ class FlowLayout(QLayout):
 
     def heightForWidth(self, width: int) -> int:
         """The height of all lines at this width."""
-        return self._arrange(QRect(0, 0, width, 0), move=False)
+        if width not in self._heights:
+            self._heights[width] = self._arrange(QRect(0, 0, width, 0), move=False)
+        return self._heights[width]
+
+    def invalidate(self) -> None:
+        """A widget came, went or changed its size: heights are counted anew."""
+        self._heights.clear()
+        super().invalidate()
 
     def setGeometry(self, rect: QRect) -> None:
         """Place every widget."""

@@ -3,7 +3,7 @@ from types import SimpleNamespace
 import pytest
 from PySide6.QtCore import QPoint, QRect, Qt
 from PySide6.QtGui import QGuiApplication
-from PySide6.QtWidgets import QApplication, QLabel, QPushButton
+from PySide6.QtWidgets import QApplication, QLabel, QPushButton, QWidget
 
 from plumbrule_core.documents.edits import edited
 from plumbrule_core.documents.findings import Edit, Judgement, Verdict
@@ -142,14 +142,18 @@ def test_the_answer_is_copied_as_text(qtbot, page, desk, made):
 def test_nothing_overlaps_and_nothing_is_cut_at_any_width(qtbot, page, desk, made, size, level: str):
     page.resize(*size)
     _show(qtbot, page, desk, made, level)
-    qtbot.wait(50)
-    for home in (page.answer, *page.findings.cards):
-        parts = [
-            part for part in home.findChildren(QLabel) + home.findChildren(QPushButton) if part.isVisible()
-        ]
-        places = [QRect(part.mapTo(home, QPoint(0, 0)), part.size()) for part in parts]
-        for place, part in zip(places, parts, strict=True):
-            assert home.rect().contains(place), part.text()
-            assert part.height() >= min(part.sizeHint().height(), part.heightForWidth(part.width()) or 10**6)
-        for here, one in enumerate(places):
-            assert not [other for other in places[here + 1 :] if one.intersects(other)]
+    homes = (page.answer, *page.findings.cards)
+    qtbot.waitUntil(lambda: [_crowded(home) for home in homes] == [[]] * len(homes), timeout=10_000)
+
+
+def _crowded(home: QWidget) -> list[str]:
+    """The words that are cut, stick out of their card, or lie over others."""
+    parts = [part for part in home.findChildren(QLabel) + home.findChildren(QPushButton) if part.isVisible()]
+    places = [QRect(part.mapTo(home, QPoint(0, 0)), part.size()) for part in parts]
+    return [
+        part.text()
+        for at, (part, place) in enumerate(zip(parts, places, strict=True))
+        if not home.rect().contains(place)
+        or part.height() < min(part.sizeHint().height(), part.heightForWidth(part.width()) or 10**6)
+        or any(place.intersects(other) for other in places[at + 1 :])
+    ]

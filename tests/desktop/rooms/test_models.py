@@ -109,12 +109,28 @@ def test_a_grid_grows_shrinks_and_changes_under_the_eyes_of_the_tester(qapp: obj
 
 
 def test_a_reading_stands_beside_the_limit_and_the_finding_that_used_it(made: SimpleNamespace):
-    table = readings_table(made.judged())
+    table = readings_table(made.nitrogen(), made.judged())
     first = dict(zip(table.header, table.rows[0], strict=True))
     assert first["Reading"] == "T1"
     assert first["Limit"] == "0.02"
     assert first["What it means here"] == "One determinant describes nitrogen less well than usual"
     assert table.rows[1][1:4] == ("Orbitals are a minimum", "yes", "")
+
+
+def test_a_reading_that_passed_shows_its_limit_as_well(made: SimpleNamespace):
+    """T1 of a closed shell 0.02 (Lee and Taylor 1989), open 0.044 (Rienstra-Kiracofe et al. 2000)."""
+    judgement = made.judged()
+    readings = (Reading(name="T1", value=0.007), Reading(name="homo_lumo_gap", value=14.2, unit="eV"))
+    both = tuple(one.model_copy(update={"readings": readings}) for one in judgement.species)
+    quiet = judgement.model_copy(update={"findings": (), "species": both})
+    rows = readings_table(made.nitrogen(), quiet).rows
+    assert [(row[0], row[1][:3], row[3]) for row in rows] == [
+        ("nitrogen", "T1", "0.02"),
+        ("nitrogen", "Gap", "at least 5 eV"),
+        ("N atom", "T1", "0.044"),
+        ("N atom", "Gap", "at least 5 eV"),
+    ]
+    assert {row[4] for row in rows} == {""}
 
 
 def test_occupations_show_those_that_say_something():

@@ -1,11 +1,11 @@
-"""What the program adds to the library: the ladder HF, MP2, CCSD, CCSD(T) of butadiene/cc-pVDZ, frozen core.
+"""What the program adds to the library: the ladder HF, MP2, CCSD, CCSD(T) in cc-pVDZ, frozen core.
 
 Each side is a whole process on one thread, started after the other, from interpreter start to exit: a bare
 PySCF script of the same settings, and our rungs with stability analysis, checkpoints on disk and readings.
 Prints the times (the best of `--repeats`) on the clock and on the processor, their ratios and the largest
 difference of an energy; exits 1 where the ratio of the clock times is above `--limit`.
 
-    python tests/benchmarks/ladder_ratio.py [--repeats 2] [--limit 1.15]
+    python tests/benchmarks/ladder_ratio.py [--molecule ethanol] [--repeats 2] [--limit 1.15]
 """
 
 import argparse
@@ -28,23 +28,35 @@ H 0.9820 2.1024 0.0
 H -1.2553 0.9570 0.0
 H -2.5455 -1.0948 0.0
 H -0.9820 -2.1024 0.0"""
+ETHANOL = """C 1.1879 -0.3829 0.0
+C 0.0 0.5526 0.0
+O -1.1867 -0.2472 0.0
+H -1.9237 0.3850 0.0
+H 2.0985 0.2306 0.0
+H 1.1184 -1.0093 0.8869
+H 1.1184 -1.0093 -0.8869
+H -0.0227 1.1812 0.8852
+H -0.0227 1.1812 -0.8852"""
+MOLECULES = {"butadiene": (BUTADIENE, 4), "ethanol": (ETHANOL, 3)}
+"""The atoms in angstrom and the number of frozen core orbitals."""
 BASIS = "cc-pVDZ"
 RUNGS = ("HF", "MP2", "CCSD", "CCSD(T)")
 MEMORY_MB = 4000
 
 
-def bare() -> dict[str, float]:
+def bare(name: str) -> dict[str, float]:
     """The ladder as a few lines of PySCF."""
     from pyscf import cc, gto, lib, mp, scf
 
     lib.num_threads(1)
-    molecule = gto.M(atom=BUTADIENE, basis=BASIS, verbose=0, max_memory=MEMORY_MB)
+    atoms, frozen = MOLECULES[name]
+    molecule = gto.M(atom=atoms, basis=BASIS, verbose=0, max_memory=MEMORY_MB)
     field = scf.RHF(molecule)
     field.conv_tol, field.conv_tol_grad = 1e-10, 1e-6
     field.kernel()
-    second_order = mp.MP2(field, frozen=4)
+    second_order = mp.MP2(field, frozen=frozen)
     second_order.kernel()
-    coupled = cc.CCSD(field, frozen=4)
+    coupled = cc.CCSD(field, frozen=frozen)
     coupled.conv_tol, coupled.conv_tol_normt = 1e-8, 1e-6
     integrals = coupled.ao2mo()
     coupled.kernel(eris=integrals)
@@ -53,7 +65,7 @@ def bare() -> dict[str, float]:
     return {rung: float(energy) for rung, energy in zip(RUNGS, energies, strict=True)}
 
 
-def ours() -> dict[str, float]:
+def ours(name: str) -> dict[str, float]:
     """The same with our rungs: stability, checkpoints and readings included."""
     from plumbrule_core.documents.plan import Settings, TaskSpec
     from plumbrule_core.documents.species import Atom, Species
@@ -62,9 +74,9 @@ def ours() -> dict[str, float]:
     from plumbrule_core.rungs import RUNGS as ALL
     from plumbrule_core.rungs.protocol import Bench, Given
 
-    rows = [line.split() for line in BUTADIENE.splitlines()]
+    rows = [line.split() for line in MOLECULES[name][0].splitlines()]
     atoms = tuple(Atom(symbol=s, x=float(x), y=float(y), z=float(z)) for s, x, y, z in rows)
-    species, bench, energies = Species(name="butadiene", atoms=atoms), Bench(), {}
+    species, bench, energies = Species(name=name, atoms=atoms), Bench(), {}
     with tempfile.TemporaryDirectory() as folder:
         for rung in RUNGS:
             spec = TaskSpec(species=species, rung=rung, settings=Settings(basis=BASIS), versions="benchmark")
@@ -93,12 +105,12 @@ class Quiet:
         """Nothing."""
 
 
-def timed(side: str) -> tuple[float, float, dict[str, float]]:
+def timed(side: str, name: str) -> tuple[float, float, dict[str, float]]:
     """Seconds of one whole process on the clock and on the processor, and its energies."""
     environment = {**os.environ, "OMP_NUM_THREADS": "1", "OMP_WAIT_POLICY": "PASSIVE"}
     begun, busy = time.perf_counter(), processor_seconds()
     done = subprocess.run(
-        [sys.executable, __file__, "--side", side],
+        [sys.executable, __file__, "--side", side, "--molecule", name],
         env=environment,
         capture_output=True,
         text=True,
@@ -120,17 +132,18 @@ def main() -> int:
     )
     parser.add_argument("--repeats", type=int, default=2)
     parser.add_argument("--limit", type=float, default=1.15)
+    parser.add_argument("--molecule", choices=tuple(MOLECULES), default="butadiene")
     parser.add_argument("--side", choices=("bare", "ours"), help=argparse.SUPPRESS)
     asked = parser.parse_args()
     if asked.side:
-        print(json.dumps(bare() if asked.side == "bare" else ours()))
+        print(json.dumps((bare if asked.side == "bare" else ours)(asked.molecule)))
         return 0
     best = {"bare": float("inf"), "ours": float("inf")}
     busy = dict(best)
     energies: dict[str, dict[str, float]] = {}
     for _ in range(asked.repeats):
         for side in best:
-            seconds, processor, energies[side] = timed(side)
+            seconds, processor, energies[side] = timed(side, asked.molecule)
             best[side], busy[side] = min(best[side], seconds), min(busy[side], processor)
     apart = max(abs(energies["bare"][rung] - energies["ours"][rung]) for rung in RUNGS)
     ratio = best["ours"] / best["bare"]

@@ -1,9 +1,15 @@
 """Every rung reproduces the published energies that stand in its file, each with its source there."""
 
+import json
+import re
+from dataclasses import replace
+from pathlib import Path
+
 import pytest
 
 from plumbrule_core.basis_sets import find
 from plumbrule_core.rungs import RUNGS
+from plumbrule_core.rungs.published_systems import WATER_OLSEN
 
 CASES = [
     pytest.param(
@@ -38,12 +44,65 @@ def test_every_rung_carries_published_values_with_a_source():
 
 
 def test_the_cartesian_flag_of_a_published_value_is_what_the_basis_does():
-    for rung in RUNGS.values():
-        for value in rung.published:
-            basis = find(value.basis)
-            assert basis is not None
-            if value.cartesian:
-                assert basis.cartesian, value.basis
+    values = [value for rung in RUNGS.values() for value in rung.published]
+    flagged = {value.basis for value in values if value.cartesian}
+    assert flagged, "no published value has Cartesian functions"
+    assert all(find(name).cartesian for name in flagged)
+    # Without d functions, as for hydrogen alone or in an unpolarised set, both kinds are the same.
+    spherical = {value.basis for value in values if not value.cartesian and holds_d_functions(value)}
+    assert not any(find(name).cartesian for name in spherical)
+
+
+def holds_d_functions(value):
+    symbols = {line.split()[0] for line in value.xyz.splitlines()}
+    return find(value.basis).polarised and bool(symbols - {"H", "He"})
+
+
+CHECKS = {
+    entry["id"]: entry
+    for entry in json.loads(Path(__file__).with_name("check_values.json").read_text(encoding="utf-8"))
+}
+"""The energies in hartree of the check values that came with the specification, word for word."""
+CHECKED = [
+    pytest.param(name, value, checks, id=f"{name}-{value.check}")
+    for name, rung in RUNGS.items()
+    for value in rung.published
+    if (checks := tuple(part.strip() for part in value.check.split(",") if part.strip()))
+]
+NAMED_FOR_THE_SYSTEM = {("HF", "F16")}
+"""The entry gives correlation energies alone; the field below them is compared with the bare library."""
+
+
+def totals_of(name, value, entry):
+    """The total energies that an entry gives, those of its own recomputation included."""
+    stated = entry["value"] if isinstance(entry["value"], list) else [entry["value"]]
+    found = [*stated, *map(float, re.findall(r"-\d+\.\d{6,}", entry["verified"]))]
+    if entry["method"] == "size extensivity":
+        return [3 * atom + excess for atom in found for excess in stated]
+    if "corr" not in entry["quantity"]:
+        return found
+    of_field = RUNGS["HF"].published
+    fields = [one.energy for one in of_field if (one.xyz, one.basis) == (value.xyz, value.basis)]
+    fields += stated[:1] if "total" in entry["quantity"] else []
+    if name == "CCSD(T)" and "(T) increment" in entry["quantity"]:
+        at = entry["quantity"].split("[")[1].rstrip("]").split(", ")
+        doubles = next(n for n, part in enumerate(at) if part.startswith("CCSD"))
+        return [field + stated[doubles] + stated[at.index("(T) increment")] for field in fields]
+    return [*found, *(field + part for field in fields for part in found)]
+
+
+@pytest.mark.parametrize(("name", "value", "checks"), CHECKED)
+def test_a_published_energy_is_the_check_value_that_it_names(name, value, checks):
+    assert CHECKS.keys() >= set(checks), "copy the entry into check_values.json"
+    if (name, value.check) in NAMED_FOR_THE_SYSTEM:
+        return
+    totals = [total for check in checks for total in totals_of(name, value, CHECKS[check])]
+    assert min(abs(total - value.energy) for total in totals) <= value.atol
+
+
+def test_a_published_energy_that_is_mistyped_is_noticed():
+    value = replace(WATER_OLSEN.gives(-76.024139), check="F02")
+    assert min(abs(total - value.energy) for total in totals_of("HF", value, CHECKS["F02"])) > value.atol
 
 
 # A. Halkier et al., Chem. Phys. Lett. 286, 243 (1998): frozen-core CCSD correlation energies in millihartree,

@@ -2,8 +2,8 @@
 
 The factors stand in units of the machine's own matrix multiplication, so that a faster machine forecasts
 faster. They were fitted to ethanol/cc-pVDZ, water/cc-pVTZ and O2/cc-pVTZ on one core at 0.026 s per 10^9
-operations, PySCF 2.14 (a CCSD iteration 5.4e-10 s, (T) 3.9e-10 s, times o^2 v^4 and o^3 v^4). The field was fitted with its stability
-analysis to ethanol/cc-pVDZ (1.2 s) and CO2/cc-pVTZ (1.8 s).
+operations, PySCF 2.14 (a CCSD iteration 5.4e-10 s, (T) 3.9e-10 s, times o^2 v^4 and o^3 v^4). The
+field was fitted with its stability analysis to ethanol/cc-pVDZ (1.2 s) and CO2/cc-pVTZ (1.8 s).
 """
 
 from plumbrule_core.documents.plan import Forecast, Machine

@@ -1,14 +1,15 @@
 """How long strong correlation takes to be looked for: naphthalene (ten heavy atoms), 20 orbitals.
 
-Computes HF, then the rung "Active space" up to its profile, and prints the seconds of each stage on the clock, the
-seconds of the processors, the profile and the space that it asks for; exits 1 where the detection took longer than
-`--limit` seconds on the clock, or where the profile is not settled. The accurate solution of the chosen space comes
-after the detection and is not part of it.
+Computes HF, then the rung "Active space" up to its profile, and prints the seconds of each stage on the
+clock, the seconds of the processors, the profile and the space that it asks for; exits 1 where the detection
+took longer than `--limit` seconds on the clock, or where the profile is not settled. The accurate solution
+of the chosen space comes after the detection and is not part of it.
 
     python tests/benchmarks/detection_time.py [--basis 6-31G*] [--threads 2] [--limit 300]
 """
 
 import argparse
+import contextlib
 import math
 import resource
 import sys
@@ -124,15 +125,11 @@ def main() -> int:
     HartreeFock().compute(given("HF"), Silent())
     print(f"HF/{asked.basis} took {time.perf_counter() - begun:.1f} s", flush=True)
     begun, busy = time.perf_counter(), processor_seconds()
-    try:
+    with contextlib.suppress(Stopped):
         ActiveSpace().compute(given("Active space"), Clock())
-    except Stopped:
-        pass
     seconds, busy = time.perf_counter() - begun, processor_seconds() - busy
     profile = profile_of_arrays(shelf.kept or {})
-    print(
-        f"detection: {seconds:.0f} s on the clock, {busy:.0f} s of the processors, {len(profile.orbitals)} orbitals"
-    )
+    print(f"detection: {seconds:.0f} s on the clock, {busy:.0f} s of the processors")
     for number, entropy in zip(profile.orbitals, profile.entropies, strict=True):
         print(f"  orbital {number:3d}  entropy {entropy:.3f}")
     print(f"largest change between two settings {profile.change:.4f}")

@@ -29,7 +29,7 @@ def plumb_line(level: Level) -> str:
         132,
         f"Plumb line: {words.LEVEL_WORDS[level]}",
         [
-            f'<rect x="20" y="6" width="48" height="120" fill="none" stroke="{FAINT}" stroke-width="1"/>',
+            f'<rect x="4" y="4" width="142" height="124" fill="none" stroke="{FAINT}" stroke-width="1"/>',
             true if lean else "",
             f'<g transform="rotate({-lean} 44 14)">'
             f'<line x1="44" y1="14" x2="44" y2="92" stroke="{colour}" stroke-width="2"{dashed}/>'

@@ -22,6 +22,8 @@ FILTERS: Mapping[str, Callable[..., str]] = {
     "difference": words.difference,
     "hartree": words.hartree,
     "reading": words.reading,
+    "source": words.source,
+    "remedy": words.remedy,
     "duration": words.duration,
     "memory": memory,
     "bar": bar,
@@ -58,6 +60,7 @@ def _context(record: Record) -> Context:
         "level_words": words.LEVEL_WORDS,
         "severity_words": words.SEVERITY_WORDS,
         "reading_words": words.READING_WORDS,
+        "said": words.said,
         "answer": _answer(record),
         "meets": judgement.answer.meets_target if judgement.answer is not None else None,
         "unit": brief.question.unit if brief.question is not None else "kJ/mol",
@@ -110,7 +113,9 @@ def _species(record: Record, species: Species) -> Context:
         "energies": energies_of(record, species),
         "readings": readings,
         "checks": tuple(checks_of(species, readings)),
-        "notes": tuple(dict.fromkeys(note for result in computed for note in result.notes)),
+        "notes": tuple(
+            f"{result.rung}/{result.basis}: {note}" for result in computed for note in result.notes
+        ),
         "used": computed[0].used if computed else {},
     }
 
@@ -119,7 +124,8 @@ def _sources(checks: Iterable[Check]) -> dict[str, list[str]]:
     """Each source with the readings whose limits it gives, nothing twice."""
     found: dict[str, list[str]] = {}
     for check in checks:
-        names = found.setdefault(check.source, []) if check.source else []
+        source = words.source(check.source)
+        names = found.setdefault(source, []) if source else []
         word = words.READING_WORDS.get(check.reading, check.reading)
         if word not in names:
             names.append(word)

@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 
-from plumbrule_core.documents.findings import Level, Severity
+from plumbrule_core.documents.findings import Level, Remedy, Severity
 from plumbrule_core.documents.results import ReadingValue
 from plumbrule_core.judgement.wording import bar
 
@@ -21,8 +21,8 @@ READING_WORDS: Mapping[str, str] = {
     "s2": "<S^2> of the reference",
     "s2_ideal": "<S^2> of the pure spin state",
     "s2_excess": "<S^2> above the pure spin state",
-    "stable": "Reference is a minimum of its kind",
-    "stable_external": "No unrestricted solution starts from the reference",
+    "stable": "Reference among solutions of its kind",
+    "stable_external": "Reference among unrestricted solutions",
     "instability_depth": "Unrestricted solution lies lower by",
     "uhf_natural_occupations": "Natural occupations, unrestricted",
     "uhf_fractional": "Largest share of an unpaired electron",
@@ -41,6 +41,34 @@ READING_WORDS: Mapping[str, str] = {
     "share_of_triples": "Share of (T) in the correlation energy",
     "triples": "(T) correction",
 }
+
+
+STATEMENTS: Mapping[str, tuple[str, str]] = {
+    "stable": ("a minimum", "not a minimum"),
+    "stable_external": ("a minimum", "not a minimum: an unrestricted solution lies lower"),
+}
+"""What a reading that is true or false says: where it is true, where it is not."""
+
+
+def said(name: str, value: ReadingValue | str, unit: str = "") -> str:
+    """The value of a reading in words where it is true or false, else as a number with its unit."""
+    yes, no = STATEMENTS.get(name, ("yes", "no"))
+    if isinstance(value, bool) or value in ("yes", "no"):
+        return yes if value in (True, "yes") else no
+    return reading(value, unit)
+
+
+def source(text: str) -> str:
+    """Where a limit or an estimate comes from, as far as a reader can look it up or repeat it."""
+    parts = (part.strip().removeprefix("arithmetic").removeprefix(":").strip() for part in text.split(";"))
+    known = (part.replace("common practice, no source", "common practice") for part in parts)
+    return "; ".join(part for part in known if part and "from memory" not in part)
+
+
+def remedy(one: Remedy) -> str:
+    """What can be done, as a sentence on paper; on the screen the same words stand on a button."""
+    done = one.label.removesuffix(" and run")
+    return f"{done}, and compute again." if one.then_run else f"{done}."
 
 
 def difference(value: float, unit: str) -> str:

@@ -1,14 +1,21 @@
 """What a report of this answer must cite: methods, extrapolation and the diagnostics that were used."""
 
+import json
 import re
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
+from typing import Any
 
+from plumbrule_core.basis_sets import Basis
 from plumbrule_core.documents.findings import Finding
 from plumbrule_core.judgement.answer import LadderValue
 from plumbrule_core.judgement.case import Case
 from plumbrule_core.judgement.extrapolation import CORRELATION_SOURCE, HF_SOURCE
 from plumbrule_core.judgement.thresholds import THRESHOLDS
 from plumbrule_core.rungs import RUNGS
+from plumbrule_resources import text
+
+PAPERS: Mapping[str, Any] = json.loads(text("citations.json"))
+"""The library that computes, and basis sets by family, some of them by element."""
 
 _YEAR = re.compile(r"\(\d{4}\)$")
 DIAGNOSTICS = {
@@ -21,10 +28,35 @@ DIAGNOSTICS = {
 
 
 def citations(case: Case, values: Sequence[LadderValue], findings: Sequence[Finding]) -> tuple[str, ...]:
-    """Every source once: the rungs in their order, the extrapolation, the diagnostics, the findings."""
+    """Every source once: rungs, extrapolation, basis sets, diagnostics, findings, what computed."""
     rungs = [RUNGS[rung].citation for rung in case.rungs if _computed(case, rung)]
     limits = [HF_SOURCE, CORRELATION_SOURCE] if any(value.extrapolated for value in values) else []
-    return tuple(dict.fromkeys([*rungs, *limits, *_diagnostics(case), *_published(findings)]))
+    program = PAPERS["program"] if any(view.results for view in case.views) else []
+    return tuple(
+        dict.fromkeys(
+            [*rungs, *limits, *_of_bases(case), *_diagnostics(case), *_published(findings), *program]
+        )
+    )
+
+
+def _of_bases(case: Case) -> Iterable[str]:
+    """The papers of the basis sets that something was computed in, for the elements that are there."""
+    for view in case.views:
+        used = {basis for _, basis in view.results}
+        for basis in case.bases:
+            if basis.name in used:
+                yield from (PAPERS["papers"][key] for key in _of_basis(basis, view.species.counts))
+
+
+def _of_basis(basis: Basis, symbols: Iterable[str]) -> Iterable[str]:
+    row = PAPERS["families"].get(basis.family, {"papers": []})
+    if row.get("consistent"):
+        for block in PAPERS["consistent"]:
+            if set(symbols) & set(block["elements"].split()):
+                yield from block["papers"]
+    yield from row["papers"]
+    yield from row.get("polarised", ()) if basis.polarised else ()
+    yield from row.get("diffuse", ()) if basis.diffuse else ()
 
 
 def _computed(case: Case, rung: str) -> bool:

@@ -1,18 +1,22 @@
 """The report says the answer and its verdict first, and then all that is needed to repeat it."""
 
 import base64
+import math
 import re
 import tomllib
+from dataclasses import replace
 from html import unescape
 from html.parser import HTMLParser
 from xml.etree import ElementTree
 
 import pytest
 
+from plumbrule_core.documents.findings import Remedy
 from plumbrule_core.documents.results import Reading
 from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.exports import EXPORTS, figures, words
 from plumbrule_core.exports.checks import checks_of
+from plumbrule_core.judgement.rules import RULES
 from plumbrule_core.judgement.thresholds import THRESHOLDS
 
 
@@ -219,3 +223,68 @@ def test_times_and_sizes_are_said_as_people_say_them():
         "2.0e-05",
         "−652.7",
     ]
+
+
+@pytest.mark.parametrize("level", sorted(figures.LEANS))
+def test_the_bob_hangs_inside_its_frame(level):
+    root = ElementTree.fromstring(figures.plumb_line(level))
+    frame = root.find("{http://www.w3.org/2000/svg}rect")
+    left, top = float(frame.get("x")), float(frame.get("y"))
+    right, bottom = left + float(frame.get("width")), top + float(frame.get("height"))
+    angle = math.radians(-figures.LEANS[level][0])
+    path = next(root.iter("{http://www.w3.org/2000/svg}path")).get("d")
+    for x, y in re.findall(r"(\d+) (\d+)", path):
+        across, down = float(x) - 44, float(y) - 14
+        assert left < 44 + across * math.cos(angle) - down * math.sin(angle) < right
+        assert top < 14 + across * math.sin(angle) + down * math.cos(angle) < bottom
+
+
+@pytest.mark.parametrize(
+    ("source", "printed"),
+    [
+        ("arithmetic", ""),
+        ("arithmetic: half k d^2 a bond", "half k d^2 a bond"),
+        ("zero-point energies, 3 to 30 kcal/mol: from memory", ""),
+        (
+            "atoms: NIST; small molecules: from memory; else the lowest spin",
+            "atoms: NIST; else the lowest spin",
+        ),
+        ("common practice, no source", "common practice"),
+        ("Lee and Taylor (1989)", "Lee and Taylor (1989)"),
+    ],
+)
+def test_a_source_that_nobody_can_look_up_is_not_printed(source, printed):
+    assert words.source(source) == printed
+
+
+def test_no_source_of_the_program_is_printed_as_a_note_to_itself():
+    rules = [rule.source for rule in RULES]
+    limits = [limit.source for limit in THRESHOLDS.values()]
+    for source in (*rules, *limits):
+        printed = words.source(source)
+        assert "from memory" not in printed
+        assert "arithmetic" not in printed
+        assert "no source" not in printed
+
+
+def test_a_reading_that_is_true_or_false_is_said_as_a_statement():
+    assert words.said("stable_external", True) == "a minimum"
+    assert words.said("stable_external", False).startswith("not a minimum: an unrestricted solution lies")
+    assert words.said("stable", "no") == "not a minimum"
+    assert words.said("T1", 0.0312) == "0.0312"
+
+
+def test_a_remedy_is_said_on_paper_as_what_can_be_done():
+    button = Remedy(label="Use cc-pVTZ and run", edits=(), then_run=True)
+    assert words.remedy(button) == "Use cc-pVTZ, and compute again."
+    assert words.remedy(Remedy(label="Freeze the core")) == "Freeze the core."
+
+
+def test_what_happened_on_the_way_is_said_with_the_calculation_it_happened_in(record):
+    task, result = next(iter(record.results.items()))
+    told = result.model_copy(update={"notes": ("carried on from iteration 3",)})
+    text = plain(page_of(replace(record, results={**record.results, task: told})))
+    assert (
+        f"In the course of its calculations: {result.rung}/{result.basis}: carried on from iteration 3"
+        in text
+    )

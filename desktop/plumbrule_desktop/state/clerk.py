@@ -11,8 +11,8 @@ Work = Callable[[], Any]
 Then = Callable[[Any], None]
 Oops = Callable[[Exception], None]
 
-CLOSE_SECONDS = 2.0
-"""So long the window waits for a job in hand, where nothing is to be written."""
+CLOSE_SECONDS = 10.0
+"""So long a job in hand is waited for: an import cut off by the end of the program could crash it."""
 
 
 class Clerk(QObject):

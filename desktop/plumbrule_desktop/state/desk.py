@@ -24,7 +24,7 @@ if TYPE_CHECKING:
 
 __all__ = ["Casebook", "Desk", "Entry", "Offer", "title_of"]
 
-CLOSE_SECONDS = 5.0
+CLOSE_SECONDS = 10.0
 """So long edits may take to be written when the window closes."""
 SHUT_SECONDS = 2.0
 

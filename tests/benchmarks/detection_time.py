@@ -51,17 +51,17 @@ class Clock:
     """A Tell that says the stages with their times, and ends the rung once the profile is safe."""
 
     def __init__(self) -> None:
-        self.begun, self.stage = time.perf_counter(), ""
+        self.begun, self.stages = time.perf_counter(), set[str]()
 
     def iteration(self, n: int, energy: float, residual: float | None = None, stage: str = "") -> None:
         """The first iteration of each stage."""
-        if stage != self.stage:
-            self.stage = stage
+        if stage not in self.stages:
+            self.stages.add(stage)
             print(f"{time.perf_counter() - self.begun:7.1f} s  {stage}", flush=True)
 
     def progress(self, fraction: float, what: str = "") -> None:
         """A stage without iterations."""
-        self.iteration(0, 0.0, None, what or self.stage)
+        self.iteration(0, 0.0, None, what)
 
     def note(self, text: str) -> None:
         """A line for people."""

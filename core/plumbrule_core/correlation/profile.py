@@ -110,8 +110,11 @@ def profile_from(window: Window, problem: Problem, solved: Solved, method: str) 
 
 
 def _doubts(problem: Problem, solved: Solved, change: float) -> Iterator[str]:
-    """Why the solution may not be the right state, in words."""
-    if not solved.converged:
+    """Why the solution may not be the right state, in words.
+
+    Two settings that agree say more than the last sweep's change of the energy, which "converged" means there.
+    """
+    if not solved.converged and solved.narrow_entropies is None:
         yield "the solution of the window did not converge"
     if solved.energy > reference_energy(problem) + 1e-6:
         yield "the solution of the window lies above its reference determinant, so it is a wrong state"

@@ -112,7 +112,8 @@ def profile_from(window: Window, problem: Problem, solved: Solved, method: str) 
 def _doubts(problem: Problem, solved: Solved, change: float) -> Iterator[str]:
     """Why the solution may not be the right state, in words.
 
-    Two settings that agree say more than the last sweep's change of the energy, which "converged" means there.
+    Two settings that agree say more than the last sweep's change of the energy, which is what "converged"
+    means there.
     """
     if not solved.converged and solved.narrow_entropies is None:
         yield "the solution of the window did not converge"

@@ -107,7 +107,7 @@ def _useless(profile: Profile, members: set[int]) -> Iterator[str]:
         filled = profile.occupations[p]
         if min(filled, 2 - filled) < USELESS and profile.reference[p] != 1:
             number = profile.orbitals[p]
-            yield f"orbital {number} holds {filled:.2f} electrons and adds little: it may be left out"
+            yield f"orbital {number} holds {filled:.2f} electrons and adds little: it can be left out"
 
 
 def _stronger(profile: Profile, members: set[int], outside: list[int]) -> Iterator[str]:

@@ -11,6 +11,7 @@ from plumbrule_core.rungs.active.division import Division, determinant_energy, d
 from plumbrule_core.rungs.active.prices import exact_forecast, space_guessed
 from plumbrule_core.rungs.active.wording import leading_words, natural_occupations, occupation_words
 from plumbrule_core.rungs.correlated.reference import reference_name
+from plumbrule_core.rungs.correlated.tailored_values import tailored_value
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
 
 NO_SPACE = "no orbital is active, so this is the energy of the one determinant"
@@ -26,7 +27,12 @@ class CASCI:
     rank = 2
     single_reference: bool = False
     citation = "B. O. Roos, P. R. Taylor and P. E. M. Siegbahn, Chem. Phys. 48, 157 (1980)"
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        tailored_value("T09", -109.0216796),
+        tailored_value("T11", -76.02778812),
+        tailored_value("T12", -75.770250519),
+        tailored_value("T13", -100.0219833546),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """One exact diagonalisation in the space."""

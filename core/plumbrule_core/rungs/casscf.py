@@ -11,6 +11,7 @@ from plumbrule_core.rungs.active.optimise import Optimised, Watch, casscf_object
 from plumbrule_core.rungs.active.prices import optimised_forecast
 from plumbrule_core.rungs.active.starts import starts
 from plumbrule_core.rungs.active.states import lowest
+from plumbrule_core.rungs.active.values import nitrogen_value
 from plumbrule_core.rungs.active.wording import (
     character_words,
     gap_words,
@@ -36,7 +37,11 @@ class CASSCF:
         "B. O. Roos, P. R. Taylor and P. E. M. Siegbahn, Chem. Phys. 48, 157 (1980); Q. Sun, J. Yang and "
         "G. K.-L. Chan, Chem. Phys. Lett. 683, 291 (2017)"
     )
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        nitrogen_value("1.1", -109.090227072, "A04", atol=1e-7),
+        nitrogen_value("1.0977", -109.0900257023, "E07", atol=1e-7),
+        nitrogen_value("1.6", -108.8832844863, "E08", atol=1e-7),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """Macro iterations of integrals, diagonalisation and rotations."""

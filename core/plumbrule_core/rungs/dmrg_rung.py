@@ -6,6 +6,7 @@ from plumbrule_core.documents.plan import Forecast, Machine
 from plumbrule_core.rungs.active.division import division_of, problem_of
 from plumbrule_core.rungs.active.prices import renormalised_forecast
 from plumbrule_core.rungs.casci import one_determinant, outcome_of
+from plumbrule_core.rungs.correlated.tailored_values import tailored_value
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
 
 
@@ -22,7 +23,10 @@ class DMRG:
         "S. R. White, Phys. Rev. Lett. 69, 2863 (1992); G. K.-L. Chan and M. Head-Gordon, J. Chem. Phys. "
         "116, 4462 (2002)"
     )
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        tailored_value("T09", -109.0216796338),
+        tailored_value("T13", -100.0219833546),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """Sweeps whose number hangs on the molecule: a wide range."""

@@ -16,7 +16,6 @@ from plumbrule_core.rungs.published_systems import (
     AMIDOGEN_SMALL,
     HELIUMS_TWO,
     HYDROGEN,
-    WATER_SMALL,
 )
 
 INSTEAD = "choose CCSDT(Q) or CCSD(T), or an active space"
@@ -36,7 +35,6 @@ class FCI:
         HYDROGEN.gives(-1.137276),
         AMIDOGEN_SMALL.gives(-55.633264),
         HELIUMS_TWO.gives(-5.74032427777),
-        WATER_SMALL.gives(-76.1210978),
     )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:

@@ -8,6 +8,7 @@ from plumbrule_core.documents.plan import Forecast, Machine
 from plumbrule_core.errors import PlumbruleError
 from plumbrule_core.rungs.active.division import Division, division_of, restricted_field
 from plumbrule_core.rungs.active.prices import perturbed_forecast, perturbed_memory_mb
+from plumbrule_core.rungs.active.values import nitrogen_value
 from plumbrule_core.rungs.correlated.reference import fitting_of, reference_name
 from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size, Tell
 
@@ -33,7 +34,11 @@ class NEVPT2:
         "C. Angeli, R. Cimiraglia, S. Evangelisti, T. Leininger and J.-P. Malrieu, J. Chem. Phys. 114, 10252 "
         "(2001); C. Angeli, R. Cimiraglia and J.-P. Malrieu, J. Chem. Phys. 117, 9138 (2002)"
     )
-    published: tuple[Published, ...] = ()
+    published: tuple[Published, ...] = (
+        nitrogen_value("1.1", -109.090227072 - 0.156225827, "A04", atol=5e-6),
+        nitrogen_value("1.0977", -109.2462, "", atol=5e-5),
+        nitrogen_value("1.5", -109.0953, "", atol=5e-5),
+    )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:
         """Densities of the active electrons and integrals."""

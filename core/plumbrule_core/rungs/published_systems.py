@@ -132,14 +132,6 @@ AMIDOGEN_SMALL = System(
     core="frozen",
 )
 HELIUMS_TWO = System(xyz=from_bohr("He 0 0 -5; He 0 0 5"), basis="6-31G", source=OWN, check="F13", atol=1e-8)
-WATER_SMALL = System(
-    xyz=from_bohr("O 0 0 -0.0742719254; H 0 1.4949589982 -1.0728640373; H 0 -1.4949589982 -1.0728640373"),
-    basis="6-31G",
-    source=OWN,
-    check="F10",
-    atol=1e-6,
-    slow=True,
-)
 WATER_SIX_D = System(
     xyz=from_bohr("O 0 0 0; H 0 1.43055071 1.10725140; H 0 -1.43055071 1.10725140"),
     basis="6-31G**",

@@ -11,7 +11,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from plumbrule_core.correlation.cuts import Cut, edges, kept
 from plumbrule_core.correlation.profile import Profile
+from plumbrule_core.correlation.reasons import calm_reason, reason
 from plumbrule_core.correlation.window import alike
 from plumbrule_core.documents.active_space import Space
 
@@ -36,14 +38,6 @@ MOST_ACTIVE = 16
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Cut:
-    """One way to part the window: places of the members in the profile, and how good the step is."""
-
-    members: tuple[int, ...]
-    score: float
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
 class Proposal:
     """A space with its reasons; it is empty where one determinant describes the molecule."""
 
@@ -62,8 +56,6 @@ class Proposal:
 
 def propose(profile: Profile) -> Proposal:
     """The active space that the profile asks for, with the reasons in words."""
-    from plumbrule_core.correlation.reasons import calm_reason, reason
-
     found = cuts(profile)
     if profile.largest < CALM or not found:
         space = Space(electrons=0, orbitals=(), why=calm_reason(profile))
@@ -145,17 +137,3 @@ def _score(profile: Profile, members: tuple[int, ...]) -> float:
         return 0.0
     weakest, strongest = (max(value, FLOOR) for value in edges(profile, members))
     return float(np.log(weakest / strongest) * min(1.0, weakest / WEAK) * kept(profile, members))
-
-
-def edges(profile: Profile, members: tuple[int, ...]) -> tuple[float, float]:
-    """The smallest entropy inside and the largest outside; 0 where nothing is outside."""
-    outside = [k for k in range(len(profile.orbitals)) if k not in members]
-    return float(profile.entropies[list(members)].min()), float(
-        np.max(profile.entropies[outside], initial=0.0)
-    )
-
-
-def kept(profile: Profile, members: tuple[int, ...]) -> float:
-    """The share of all mutual information that is among the members."""
-    whole = float(profile.mutual_information.sum())
-    return float(profile.mutual_information[np.ix_(members, members)].sum()) / whole if whole > 0 else 0.0

@@ -1,12 +1,9 @@
 """Why a space was proposed, and what one group more or less would change, in words."""
 
 from collections.abc import Sequence
-from typing import TYPE_CHECKING
 
+from plumbrule_core.correlation.cuts import Cut, edges, kept
 from plumbrule_core.correlation.profile import Profile
-
-if TYPE_CHECKING:
-    from plumbrule_core.correlation.proposal import Cut
 
 
 def calm_reason(profile: Profile) -> str:
@@ -20,10 +17,8 @@ def calm_reason(profile: Profile) -> str:
     )
 
 
-def reason(profile: Profile, cuts: Sequence["Cut"], place: int, step: bool) -> str:
+def reason(profile: Profile, cuts: Sequence[Cut], place: int, step: bool) -> str:
     """Why this cut was taken out of all, and what its neighbours would be."""
-    from plumbrule_core.correlation.proposal import edges, kept
-
     members = cuts[place].members
     weakest, strongest = edges(profile, members)
     lead = "There is a step" if step else "No step stands out; the best place to cut is"

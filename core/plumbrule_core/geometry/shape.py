@@ -1,12 +1,12 @@
 """Measures of shape for the checks before a run; atoms are numbered from 0, lengths in angstrom."""
 
 import math
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
-from plumbrule_core.documents.bonding import bonds, distance, normal_length
+from plumbrule_core.documents.bonding import bonds, distance, normal_length, pieces
 from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.geometry.valence import free_valences, likely_orders, neighbours, usual_length
@@ -101,12 +101,25 @@ def stretched_bonds(species: Species) -> tuple[Pair, ...]:
     The normal length is that of the highest bond order the two atoms can have: N-N at 2 angstrom in N2 is a
     triple bond stretched to 1.85 times.
     """
-    pairs = (
-        Pair(i, j, distance(a, b), usual_length(a, b, order))
-        for (i, j), order in sorted(likely_orders(species.atoms).items())
-        for a, b in [(species.atoms[i], species.atoms[j])]
-    )
-    return tuple(p for p in pairs if STRETCHED_SHARE < p.share < PARTED_SHARE)
+    return tuple(p for p in _likely_bonds(species) if STRETCHED_SHARE < p.share < PARTED_SHARE)
+
+
+def parted_bonds(species: Species) -> tuple[Pair, ...]:
+    """Pairs of atoms in two pieces that both lack a bond, and lack it beyond 2.2 normal lengths.
+
+    H2 at 3 angstrom: its halves lie 4 times their normal length apart, and each still lacks its bond.
+    """
+    pairs = tuple(_likely_bonds(species))
+    whole = [(p.first, p.second) for p in pairs if p.share < PARTED_SHARE]
+    piece_of = {at: piece for piece in pieces(len(species.atoms), whole) for at in piece}
+    return tuple(p for p in pairs if p.share >= PARTED_SHARE and piece_of[p.first] is not piece_of[p.second])
+
+
+def _likely_bonds(species: Species) -> Iterator[Pair]:
+    """Bonds, and pairs that both lack one; normal is the length of the highest order they can have."""
+    for (i, j), order in sorted(likely_orders(species.atoms).items()):
+        a, b = species.atoms[i], species.atoms[j]
+        yield Pair(i, j, distance(a, b), usual_length(a, b, order))
 
 
 def twisted_double_bonds(species: Species) -> tuple[Twist, ...]:

@@ -5,7 +5,7 @@ from collections.abc import Iterable, Sequence
 from plumbrule_core.documents.findings import SEVERITIES, Answer, Finding, Level, Severity, Verdict
 from plumbrule_core.judgement.answer import LadderValue
 from plumbrule_core.judgement.case import Case, SpeciesView
-from plumbrule_core.judgement.wording import in_unit
+from plumbrule_core.judgement.wording import in_unit, listed
 from plumbrule_core.rungs import RUNGS
 
 LEVELS: dict[Severity, Level] = {"note": "sound", "care": "take care", "stop": "do not rely on it"}
@@ -57,7 +57,7 @@ def overall(
     severity = _with_lost_rungs(case, best, findings, worst(touching))
     reasons = tuple(dict.fromkeys(one.headline for one in telling))
     if severity == "note":
-        return _calm(case, best, answer)
+        return _calm(case, best, answer, findings)
     headline = reasons[0] if reasons else f"A rung above {best.rung} is not to be used."
     return Verdict(level=LEVELS[severity], headline=_led(severity, headline), reasons=reasons or (headline,))
 
@@ -79,8 +79,8 @@ _PLAIN = {"One", "The", "An", "A", "All"}
 """First words of headlines that lose their capital inside a sentence."""
 
 
-def _calm(case: Case, best: LadderValue, answer: Answer) -> Verdict:
-    fine = _fine(case, best)
+def _calm(case: Case, best: LadderValue, answer: Answer, findings: Sequence[Finding]) -> Verdict:
+    fine = _fine(case, best, findings)
     if case.pending:
         return Verdict(level="unknown", headline=f"So far nothing speaks against it; {_left(case)}.")
     if answer.uncertainty is None:
@@ -95,10 +95,27 @@ def _calm(case: Case, best: LadderValue, answer: Answer) -> Verdict:
     return Verdict(level="sound", headline=f"Sound: {held}.", reasons=(_capital(fine) + ".",))
 
 
-def _fine(case: Case, best: LadderValue) -> str:
-    if not any(view.inexact(best.rung) for view in case.views):
-        return f"{best.rung} is exact where no more than two electrons are correlated"
-    return f"one determinant describes {case.species[0].name if len(case.species) == 1 else 'every molecule'}"
+def _fine(case: Case, best: LadderValue, findings: Sequence[Finding]) -> str:
+    described = [view.name for view in case.views if view.inexact(best.rung)]
+    if not described:
+        return _exact(case.views, best.rung, [n for n in case.wave_functions if stopped(findings, n)])
+    if len(described) == len(case.views) > 1:
+        return "one determinant describes every molecule"
+    exact = listed(view.name for view in case.views if not view.inexact(best.rung))
+    beside = f", and {best.rung} is exact for {exact}" if exact else ""
+    return f"one determinant describes {listed(described)}{beside}"
+
+
+def _exact(views: Sequence[SpeciesView], rung: str, lost: Sequence[str]) -> str:
+    """Of one electron or two, where no third can be excited: CCSD(T) is CCSD, and that is exact."""
+    many = "two" if max(view.correlated_electrons for view in views) == 2 else "one"
+    kind = "" if all(view.species.electrons <= 2 for view in views) else "correlated "
+    electrons = f"{many} {kind}electron{'s' if many == 'two' else ''}"
+    what = f"CCSD is exact in this basis{', and CCSD(T) is the same' if rung == 'CCSD(T)' else ''}"
+    if rung not in ("CCSD", "CCSD(T)"):
+        what = f"{rung} is exact in this basis"
+    unused = f"; {listed(lost)} {'are' if len(lost) > 1 else 'is'} not to be used" if lost else ""
+    return f"with {electrons}, {what}{unused}"
 
 
 def _capital(words: str) -> str:
@@ -145,6 +162,8 @@ def of_species(case: Case, view: SpeciesView, rung: str | None, findings: Sequen
         return Verdict(level="unknown", headline="So far nothing speaks against it.")
     calm = f"One determinant describes {view.name}."
     if rung is not None and not view.inexact(rung):
-        calm = f"{rung} is exact for {view.name}, which has no more than two correlated electrons."
-        return Verdict(level="sound", headline=f"Sound: {calm}", reasons=(calm,))
+        about = [one for one in findings if one.species == view.name]
+        unused = [name for name in case.wave_functions if stopped(about, name)]
+        calm = f"{_exact((view,), rung, unused)}."
+        return Verdict(level="sound", headline=f"Sound: {calm}", reasons=(_capital(calm),))
     return Verdict(level="sound", headline=f"Sound: {calm[0].lower()}{calm[1:]}", reasons=(calm,))

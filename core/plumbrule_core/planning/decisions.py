@@ -8,6 +8,7 @@ from plumbrule_core.documents.questions import BondQuestion, EnergyQuestion
 from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.documents.species import Species, spin_words
 from plumbrule_core.planning.sizes import elements_of, frozen_of, functions_of
+from plumbrule_core.rungs import RUNGS
 
 FITTING_FROM = 300
 """Basis functions of the largest species from which density fitting is chosen: common practice, no source."""
@@ -98,5 +99,11 @@ def _left_out(brief: Brief, species: tuple[Species, ...]) -> Iterator[str]:
     if not isinstance(brief.question, EnergyQuestion):
         yield "The answer is an electronic energy: zero-point and thermal energies are not included."
     frozen = any(frozen_of(one, basis) for one in species for basis in sets_of(brief.recipe))
-    if brief.recipe.core == "frozen" and frozen:
+    if brief.recipe.core == "frozen" and frozen and _correlates(brief.recipe):
         yield "Core electrons are left out of the correlation treatment (frozen core)."
+
+
+def _correlates(recipe: Recipe) -> bool:
+    """Whether any rung correlates electrons: Hartree-Fock and functionals leave no core out."""
+    known = [RUNGS[name] for name in recipe.rungs if name in RUNGS]
+    return any(rung.kind == "wave function" and rung.name != "HF" for rung in known)

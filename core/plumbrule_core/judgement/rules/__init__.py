@@ -9,6 +9,7 @@ from plumbrule_core.judgement.rules import (
     failures,
     hazard,
     ladder,
+    meaning,
     one_determinant,
     origin,
     reference,
@@ -36,6 +37,7 @@ RULES: tuple[Rule, ...] = (
     *relativity.RULES,
     *cost.RULES,
     *target.RULES,
+    *meaning.RULES,
     *hazard.RULES,
 )
 """Every rule, in the order in which findings of equal severity are shown."""

@@ -4,13 +4,26 @@ from collections.abc import Callable
 
 from plumbrule_core.documents.findings import Finding, Severity
 from plumbrule_core.judgement.case import Case, SpeciesView
-from plumbrule_core.judgement.evidence import corroborated, evidence_of, singles_grade, singles_limits
+from plumbrule_core.judgement.evidence import (
+    FAMILY_WORDS,
+    corroborated,
+    doubles_grade,
+    evidence_of,
+    grades,
+    singles_grade,
+    singles_limits,
+)
 from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule, measured
 from plumbrule_core.judgement.rules.remedies import active_space
 from plumbrule_core.judgement.thresholds import THRESHOLDS
+from plumbrule_core.judgement.wording import listed
 
 COUPLED_CLUSTER = ("CCSD", "CCSD(T)")
+KIN_WORDS = {
+    "largest_t2": "the largest doubles amplitude",
+    "mp2_largest_t2": "the largest doubles amplitude of MP2",
+}
 SINGLES = "The Hartree-Fock orbitals are not the best ones for this molecule, and CCSD has to repair them."
 DOUBLES = "A pair of electrons leaves its orbital to a large part, which CCSD and (T) describe less well."
 
@@ -22,13 +35,9 @@ def _large(
         value, limit = view.number(reading), THRESHOLDS[limit_of(view)]
         if value is None or value <= limit.value or view.exact_from_ccsd:
             return None
-        far = family == "singles" and singles_grade(view).grade >= 2
-        severity: Severity = "care" if far or corroborated(case, view, family) else "note"
-        agree = (
-            "It does not stand alone, so the error can exceed the bar."
-            if severity == "care"
-            else "No other diagnostic agrees, so the number stands."
-        )
+        graded = singles_grade(view) if family == "singles" else doubles_grade(view)
+        severity: Severity = "care" if graded.grade >= 2 or corroborated(case, view, family) else "note"
+        agree = _agreement(case, view, family, reading, severity)
         return Finding(
             code=code,
             severity=severity,
@@ -41,6 +50,25 @@ def _large(
         )
 
     return judge
+
+
+def _agreement(case: Case, view: SpeciesView, family: str, reading: str, severity: Severity) -> str:
+    """What else is raised, by the same grades that the verdict is made of."""
+    raised = [one for one in grades(case, view) if one.grade]
+    kin = [
+        f"{KIN_WORDS.get(e.reading, e.reading)} is {e.value:.2f}"
+        for one in raised
+        if one.family == family
+        for e in one.evidence
+        if e.reading != reading
+    ]
+    others = [*kin, *(FAMILY_WORDS[one.family] for one in raised if one.family != family)]
+    if severity == "care":
+        why = f": {listed(others)}" if others else ""
+        return f"It does not stand alone{why}; so the error can exceed the bar."
+    if kin:
+        return f"Of the same kind, {listed(kin)}; no diagnostic of another kind agrees, so the number stands."
+    return "No other diagnostic agrees, so the number stands."
 
 
 def _t2(case: Case, view: SpeciesView) -> Finding | None:
@@ -58,7 +86,8 @@ def _t2(case: Case, view: SpeciesView) -> Finding | None:
         f"{(serious if large else notable).value:g}.",
         consequence=DOUBLES
         if large
-        else "One pair of electrons is correlated strongly; by itself this is no reason to doubt.",
+        else "One pair of electrons is correlated strongly; by itself this is no reason to doubt"
+        + (", but it is not the only sign here." if corroborated(case, view, "doubles") else "."),
         evidence=(evidence_of("largest_t2", value, serious if large else notable),),
         remedies=active_space(case) if large else (),
     )

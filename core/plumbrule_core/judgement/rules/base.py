@@ -7,6 +7,7 @@ from typing import Literal
 from plumbrule_core.documents.findings import Evidence, Finding, Remedy, Severity
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.rules.example import Example
+from plumbrule_core.units import EnergyUnit, from_hartree
 
 Stage = Literal["before", "after", "always", "answer"]
 """Before the run; after it; both; or once the answer and its bar are known."""
@@ -40,9 +41,27 @@ def run(rules: Iterable[Rule], stages: tuple[Stage, ...], case: Case) -> tuple[F
     return tuple(one for rule in rules if rule.stage in stages for one in _ask(rule, case))
 
 
+def _in_unit(finding: Finding, unit: EnergyUnit) -> Finding:
+    """The finding with evidence in hartree said in the user's unit, which its sentences use too."""
+    return finding.model_copy(update={"evidence": tuple(_converted(one, unit) for one in finding.evidence)})
+
+
+def _converted(evidence: Evidence, unit: EnergyUnit) -> Evidence:
+    if evidence.unit != "hartree" or isinstance(evidence.value, str):
+        return evidence
+    limit = evidence.threshold
+    return evidence.model_copy(
+        update={
+            "value": from_hartree(evidence.value, unit),
+            "threshold": None if limit is None else from_hartree(limit, unit),
+            "unit": unit,
+        }
+    )
+
+
 def _ask(rule: Rule, case: Case) -> tuple[Finding, ...]:
     try:
-        return tuple(rule.judge(case))
+        return tuple(_in_unit(one, case.unit) for one in rule.judge(case))
     except Exception as error:
         return (
             Finding(

@@ -2,13 +2,15 @@
 
 from collections.abc import Iterator
 
-from plumbrule_core.basis_sets import find, frozen_orbitals
+from plumbrule_core.basis_sets import Basis, find, frozen_orbitals
 from plumbrule_core.documents.findings import Evidence, Finding
 from plumbrule_core.documents.questions import EnergyQuestion
+from plumbrule_core.elements import ELEMENTS
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import change, covering, larger_basis, with_diffuse
+from plumbrule_core.judgement.wording import listed, rough_range
 
 PRACTICE = "common practice, no source"
 STATISTICS = (
@@ -25,8 +27,9 @@ def _anion(case: Case, view: SpeciesView) -> Finding | None:
         severity="care",
         species=view.name,
         headline=f"{view.name} is an anion, and {largest.name} has no diffuse functions.",
-        consequence="The extra electron is squeezed into too small a space; its energy is too high by "
-        "tens of kJ/mol.",
+        consequence="The extra electron is squeezed into too small a space; its energy is too high, "
+        f"typically by {rough_range(20, 300, case.unit)}, and an electron affinity from it is too small by "
+        "as much.",
         evidence=(Evidence(reading="charge", value=float(view.species.charge), source=PRACTICE),),
         remedies=with_diffuse(case),
     )
@@ -59,6 +62,48 @@ def _core(case: Case) -> Iterator[Finding]:
                     ),
                 ),
             )
+
+
+def _unfrozen(case: Case) -> Iterator[Finding]:
+    largest = case.largest
+    if case.recipe.core != "frozen" or largest is None or not any(n != "HF" for n in case.wave_functions):
+        return
+    symbols = dict.fromkeys(atom.symbol for one in case.species for atom in one.atoms)
+    free = [symbol for symbol in symbols if _keeps_its_core(symbol, largest)]
+    if not free:
+        return
+    replaced = [symbol for symbol in free if largest.potential_electrons(symbol)]
+    yield Finding(
+        code="core-not-frozen",
+        severity="note",
+        headline=f"The frozen core freezes nothing of {listed(free)}.",
+        consequence=" ".join(_why_unfrozen([s for s in free if s not in replaced], replaced)),
+        evidence=(
+            Evidence(
+                reading="frozen orbitals", value=0.0, source="the table of frozen cores of this program"
+            ),
+        ),
+    )
+
+
+def _keeps_its_core(symbol: str, basis: Basis) -> bool:
+    """Whether an element has a core of which the table, or its potential, leaves nothing to freeze."""
+    return (
+        ELEMENTS[symbol].number > 2 and not basis.missing((symbol,)) and not frozen_orbitals((symbol,), basis)
+    )
+
+
+def _why_unfrozen(near: list[str], replaced: list[str]) -> Iterator[str]:
+    if near:
+        yield (
+            f"The core of {listed(near)} lies close to the valence, so the table correlates it, in a basis "
+            "set that is made for the valence."
+        )
+    if replaced:
+        yield (
+            f"The core potential replaces the inner core of {listed(replaced)}; every electron outside it is "
+            "correlated."
+        )
 
 
 def _uncovered(case: Case) -> Iterator[Finding]:
@@ -100,8 +145,8 @@ def _minimal(case: Case) -> Iterator[Finding]:
         code="basis-minimal",
         severity="care",
         headline=f"{largest.name} is a minimal basis set.",
-        consequence="It is good for a first look; reaction and bond energies from it are off by tens of "
-        "kcal/mol.",
+        consequence="It is good for a first look; reaction and bond energies from it are off by "
+        f"{rough_range(40, 400, case.unit)}.",
         evidence=(Evidence(reading="basis", value=largest.name, source=PRACTICE),),
         remedies=larger_basis(case),
     )
@@ -157,6 +202,27 @@ RULES = (
         judge=_core,
         quiet=(Example(), Example(recipe={"core": "all", "basis": ["cc-pCVTZ"]})),
         loud=(Example(recipe={"core": "all"}),),
+    ),
+    Rule(
+        code="core-not-frozen",
+        severity="note",
+        stage="always",
+        reads=("core", "basis"),
+        source="the table of frozen cores of this program",
+        judge=_unfrozen,
+        quiet=(
+            Example(),
+            Example(recipe={"core": "all"}),
+            Example(
+                molecules={"be2": Molecule(xyz="Be 0 0 0; Be 0 0 2.45")}, recipe={"rungs": ["HF", "PBE"]}
+            ),
+        ),
+        loud=(
+            Example(molecules={"be2": Molecule(xyz="Be 0 0 0; Be 0 0 2.45")}),
+            Example(
+                molecules={"agh": Molecule(xyz="Ag 0 0 0; H 0 0 1.62")}, recipe={"basis": ["def2-TZVPP"]}
+            ),
+        ),
     ),
     Rule(
         code="basis-missing",

@@ -10,6 +10,7 @@ from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule, measured
 from plumbrule_core.judgement.rules.remedies import active_space, advice
 from plumbrule_core.judgement.thresholds import THRESHOLDS
+from plumbrule_core.judgement.wording import rough_range
 from plumbrule_core.rungs import RUNGS
 
 
@@ -75,7 +76,7 @@ def _dependent(case: Case, view: SpeciesView) -> Finding | None:
         ),
         consequence=(
             "The species of the question no longer have the same basis; the difference can be off by "
-            "some kJ/mol."
+            f"{rough_range(1, 10, case.unit)}."
             if removed
             else "Rounding errors grow, but nothing was removed and the number stands."
         ),

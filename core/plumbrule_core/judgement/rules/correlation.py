@@ -7,6 +7,7 @@ from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule, measured
 from plumbrule_core.judgement.rules.remedies import active_space
 from plumbrule_core.judgement.thresholds import THRESHOLDS
+from plumbrule_core.judgement.wording import rough_range
 
 
 def _triples(case: Case, view: SpeciesView) -> Finding | None:
@@ -28,8 +29,8 @@ def _triples(case: Case, view: SpeciesView) -> Finding | None:
             "Where (T) is this large, what lies beyond it is no longer small, and rungs below CCSD(T) "
             "are far off."
             if severity == "care"
-            else "Rungs below CCSD(T) are off by several kcal/mol here; the bar of CCSD(T) allows for "
-            "what lies beyond it."
+            else f"Rungs below CCSD(T) are off by {rough_range(10, 40, case.unit)} here; the bar of CCSD(T) "
+            "allows for what lies beyond it."
         ),
         evidence=tuple(shown),
         remedies=active_space(case) if severity == "care" else (),

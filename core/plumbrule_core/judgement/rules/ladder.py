@@ -10,7 +10,7 @@ from plumbrule_core.judgement.case import Case, Standing
 from plumbrule_core.judgement.rules.base import Rule
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import add_rungs
-from plumbrule_core.judgement.wording import amount, listed
+from plumbrule_core.judgement.wording import amount, listed, rough_range
 from plumbrule_core.rungs import RUNGS
 from plumbrule_core.units import from_hartree
 
@@ -116,7 +116,7 @@ def _weak_ladder(case: Case) -> Iterator[Finding]:
     headline, consequence = (
         (
             "Hartree-Fock leaves out electron correlation.",
-            "Reaction and bond energies are off by tens of kcal/mol.",
+            f"Reaction and bond energies are off by {rough_range(40, 400, case.unit)}.",
         )
         if standing.rung == "HF"
         else (

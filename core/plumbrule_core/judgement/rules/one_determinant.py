@@ -8,7 +8,7 @@ from plumbrule_core.judgement.evidence import FAMILY_WORDS, Grade, grades
 from plumbrule_core.judgement.rules.base import Rule
 from plumbrule_core.judgement.rules.example import measured
 from plumbrule_core.judgement.rules.remedies import active_space
-from plumbrule_core.judgement.wording import listed
+from plumbrule_core.judgement.wording import listed, rough_range
 
 SOURCE = "own calibration on systems with known answers; each limit names its own source"
 
@@ -58,7 +58,8 @@ def _stop(case: Case, view: SpeciesView, raised: list[Grade], rungs: tuple[str, 
         rungs=rungs,
         headline=f"One determinant does not describe {view.name}.",
         consequence=f"{_reasons(raised)}. {listed(rungs)} {'are' if len(rungs) > 1 else 'is'} wrong here "
-        "by an unknown amount, typically 15 to 90 kcal/mol, however well the calculation converged.",
+        f"by an unknown amount, typically {rough_range(60, 400, case.unit)}, however well the calculation "
+        "converged.",
         evidence=tuple(one for grade in raised for one in grade.evidence),
         remedies=active_space(case),
     )
@@ -71,7 +72,8 @@ def _care(case: Case, view: SpeciesView, raised: list[Grade], rungs: tuple[str, 
         species=view.name,
         rungs=rungs,
         headline=f"One determinant describes {view.name} only in part.",
-        consequence=f"{_reasons(raised)}. The number can be off by several kcal/mol more than the bar says.",
+        consequence=f"{_reasons(raised)}. The number can be off by {rough_range(10, 40, case.unit)} more "
+        "than the bar says.",
         evidence=tuple(one for grade in raised for one in grade.evidence),
         remedies=active_space(case),
     )

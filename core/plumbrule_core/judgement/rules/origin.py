@@ -11,7 +11,7 @@ from plumbrule_core.judgement.geometry_origin import origin_of
 from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import advice
-from plumbrule_core.judgement.wording import listed
+from plumbrule_core.judgement.wording import listed, rough_range
 
 
 def _pieces(case: Case, view: SpeciesView) -> Finding | None:
@@ -25,8 +25,8 @@ def _pieces(case: Case, view: SpeciesView) -> Finding | None:
         species=view.name,
         headline=f"{view.name} consists of {len(parts)} pieces that no bond joins.",
         consequence="Each piece borrows basis functions of the others, which makes them stick together "
-        "too well: up to 2 "
-        "to 3 kcal/mol in double zeta. If this was meant to be one molecule, its geometry is wrong.",
+        f"too well: up to {rough_range(8, 13, case.unit)} in double zeta. If this was meant to be one "
+        "molecule, its geometry is wrong.",
         evidence=(
             Evidence(reading="atoms in the pieces", value=sizes, source="own, water dimer in cc-pVDZ"),
         ),

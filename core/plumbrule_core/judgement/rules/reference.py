@@ -1,14 +1,21 @@
 """The Hartree-Fock reference: is it the right solution, and a stable one?"""
 
+import re
+from collections.abc import Iterable
+from itertools import chain
+
 from plumbrule_core.documents.findings import Evidence, Finding
 from plumbrule_core.judgement.case import Case, SpeciesView
-from plumbrule_core.judgement.evidence import evidence_of
+from plumbrule_core.judgement.evidence import evidence_of, grades
 from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule, measured
 from plumbrule_core.judgement.rules.remedies import active_space, change
 from plumbrule_core.judgement.thresholds import THRESHOLDS
 from plumbrule_core.judgement.wording import amount
+from plumbrule_core.rungs import RUNGS
+from plumbrule_core.units import to_hartree
 
+LOWERED = re.compile(r"followed to one (\d+\.\d+) kJ/mol lower")
 ARITHMETIC = "the second derivative of the Hartree-Fock energy"
 
 
@@ -31,20 +38,40 @@ def _saddle(case: Case, view: SpeciesView) -> Finding | None:
 
 
 def _followed(case: Case, view: SpeciesView) -> Finding | None:
-    said = [note for (rung, _), result in view.results.items() if rung == "HF" for note in result.notes]
-    told = [note for note in dict.fromkeys(said) if "followed" in note.lower()]
-    if not told:
+    notes = [result.notes for (rung, _), result in view.results.items() if rung == "HF"]
+    gain = max(map(lowered_by, notes), default=0.0)
+    if not gain:
         return None
+    told = [note for note in dict.fromkeys(chain.from_iterable(notes)) if LOWERED.search(note)]
+    correlated = [n for n in case.doubtful(view) if n != "HF" and RUNGS[n].kind == "wave function"]
+    deep = gain > THRESHOLDS["instability_depth_care"].value
+    far = deep and bool(correlated) and any(one.grade for one in grades(case, view))
     return Finding(
         code="hf-followed",
-        severity="note",
+        severity="care" if far else "note",
         species=view.name,
-        headline=f"The first Hartree-Fock solution of {view.name} was not the lowest.",
-        consequence="It was followed down, and everything above stands on the lower solution. On a "
-        "curve, the same "
-        "solution must be used at every point.",
+        rungs=tuple(correlated) if far else (),
+        headline=f"The first Hartree-Fock solution of {view.name} was not the lowest: the one that was taken "
+        f"lies {amount(gain, case.unit)} below it.",
+        consequence=_on_the_lower(far),
         evidence=tuple(Evidence(reading="Hartree-Fock", value=note[:400]) for note in told),
     )
+
+
+def _on_the_lower(far: bool) -> str:
+    curve = "On a curve, the same solution must be used at every point."
+    if not far:
+        return f"Everything above stands on the lower solution. {curve}"
+    return (
+        "A solution that much lower has as a rule less symmetry than the molecule. Correlated numbers on it "
+        "can be far off, worse than on the first solution, although Hartree-Fock itself is lower. " + curve
+    )
+
+
+def lowered_by(notes: Iterable[str]) -> float:
+    """The energy in hartree by which one run of Hartree-Fock followed instabilities down, by its notes."""
+    gains = (LOWERED.search(note) for note in notes)
+    return sum(to_hartree(float(gain[1]), "kJ/mol") for gain in gains if gain)
 
 
 def _spread(case: Case, view: SpeciesView) -> Finding | None:
@@ -96,7 +123,7 @@ def _gap(case: Case, view: SpeciesView) -> Finding | None:
         code="gap-small",
         severity="care" if gap < 0 else "note",
         species=view.name,
-        rungs=case.single_reference,
+        rungs=case.doubtful(view),
         headline=f"{view.name} has a small Hartree-Fock gap of {gap:.1f} eV.",
         consequence=(
             "An empty orbital lies below a filled one, so the state that was computed is probably not "
@@ -108,8 +135,8 @@ def _gap(case: Case, view: SpeciesView) -> Finding | None:
     )
 
 
-def _told(*notes: str) -> Molecule:
-    return Molecule(energies={"HF": -108.9}, notes=notes)
+def _told(*notes: str, **readings: float) -> Molecule:
+    return Molecule(energies={"HF": -108.9}, notes=notes, readings=readings)
 
 
 RULES = (
@@ -125,13 +152,16 @@ RULES = (
     ),
     Rule(
         code="hf-followed",
-        severity="note",
+        severity="care",
         stage="after",
-        reads=("notes of HF",),
+        reads=("notes of HF", "the grades of every reading"),
         source=ARITHMETIC,
         judge=each(_followed),
         quiet=(Example(molecules={"n2": _told("20 iterations")}),),
-        loud=(Example(molecules={"n2": _told("followed to one 0.70 kJ/mol lower")}),),
+        loud=(
+            Example(molecules={"n2": _told("followed to one 0.70 kJ/mol lower")}),
+            Example(molecules={"n2": _told("followed to one 362.42 kJ/mol lower", largest_t2=0.36)}),
+        ),
     ),
     Rule(
         code="hf-guesses-spread",

@@ -9,7 +9,7 @@ from plumbrule_core.judgement.case import Case
 from plumbrule_core.judgement.rules.base import Rule
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import change
-from plumbrule_core.judgement.wording import listed
+from plumbrule_core.judgement.wording import listed, rough_range
 
 HEAVY = 36
 """Beyond krypton scalar relativity moves reactions by several kcal/mol (common practice, no source)."""
@@ -28,7 +28,8 @@ def _left_out(case: Case) -> Iterator[Finding]:
         code="relativity-left-out",
         severity="care",
         headline=f"{listed(bare)} {'is' if len(bare) == 1 else 'are'} treated without relativity.",
-        consequence="Its effect on reaction and bond energies of elements this heavy is several kcal/mol.",
+        consequence="Its effect on reaction and bond energies of elements this heavy is typically "
+        f"{rough_range(10, 40, case.unit)}.",
         evidence=(
             Evidence(
                 reading="heaviest element without a potential",

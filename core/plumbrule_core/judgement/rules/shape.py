@@ -4,11 +4,13 @@ from plumbrule_core.documents.findings import Edit, Evidence, Finding, Remedy
 from plumbrule_core.documents.species import Species
 from plumbrule_core.geometry.shape import (
     CLASH_SHARE,
+    PARTED_SHARE,
     STRETCHED_SHARE,
     TWIST_LIMIT,
     clashes,
     in_bohr_as_angstrom,
     looks_like_bohr,
+    parted_bonds,
     stretched_bonds,
     twisted_double_bonds,
 )
@@ -96,15 +98,49 @@ def _stretched(case: Case, view: SpeciesView) -> Finding | None:
         code="bond-stretched",
         severity="care",
         species=view.name,
-        rungs=case.single_reference,
+        rungs=case.doubtful(view),
         headline=f"{name} in {view.name} is stretched to {worst.share:.2f} times its normal length.",
-        consequence="Methods on one determinant fail on breaking bonds, and CCSD(T) can fall far below "
-        "the two halves.",
+        consequence=_on_breaking(view),
         evidence=(
             Evidence(
                 reading=f"distance {name}",
                 value=worst.distance,
                 threshold=STRETCHED_SHARE * worst.normal,
+                unit="angstrom",
+                source=PRACTICE,
+            ),
+        ),
+        remedies=active_space(case),
+    )
+
+
+def _on_breaking(view: SpeciesView) -> str:
+    if view.exact_from_ccsd:
+        return "HF and MP2 fail on breaking bonds; with two electrons, CCSD is exact all the same."
+    return "Methods on one determinant fail on breaking bonds, and CCSD(T) can fall far below the two halves."
+
+
+def _parted(case: Case, view: SpeciesView) -> Finding | None:
+    found = parted_bonds(view.species) if view.closed_shell else ()
+    touched = case.doubtful(view)
+    if not found or not touched:
+        return None
+    nearest = min(found, key=lambda pair: pair.share)
+    name = pair_name(view.species, nearest.first, nearest.second)
+    return Finding(
+        code="bond-parted",
+        severity="care",
+        species=view.name,
+        rungs=touched,
+        headline=f"{name} in {view.name} is stretched to {nearest.share:.1f} times its normal length: the "
+        "bond is broken.",
+        consequence=f"Each half keeps electrons of the pair, and a singlet of both needs more than one "
+        f"determinant. {_on_breaking(view)}",
+        evidence=(
+            Evidence(
+                reading=f"distance {name}",
+                value=nearest.distance,
+                threshold=PARTED_SHARE * nearest.normal,
                 unit="angstrom",
                 source=PRACTICE,
             ),
@@ -183,6 +219,21 @@ RULES = (
         judge=each(_stretched),
         quiet=(_one(_WATER), _one("N 0 0 0; N 0 0 1.3")),
         loud=(_one("N 0 0 0; N 0 0 2.0"),),
+    ),
+    Rule(
+        code="bond-parted",
+        severity="care",
+        stage="always",
+        reads=("atoms",),
+        source=PRACTICE,
+        judge=each(_parted),
+        quiet=(
+            _one(_WATER),
+            _one("N 0 0 0; N 0 0 2.0"),
+            _one(f"{_WATER}; O 0 0 4.1173; H 0 0.7572 3.5308; H 0 -0.7572 3.5308"),
+            Example(molecules={"h2": Molecule(xyz="H 0 0 0; H 0 0 3.0", multiplicity=3)}),
+        ),
+        loud=(_one("H 0 0 0; H 0 0 3.0"), _one("N 0 0 0; N 0 0 6.0")),
     ),
     Rule(
         code="double-bond-twisted",

@@ -10,6 +10,7 @@ from plumbrule_core.judgement.rules.base import Rule, each
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import active_space, restricted_open_shell, spin_state
 from plumbrule_core.judgement.thresholds import THRESHOLDS
+from plumbrule_core.judgement.wording import rough_range
 from plumbrule_core.rungs import RUNGS
 
 
@@ -63,7 +64,7 @@ def _other_state(case: Case, view: SpeciesView) -> Finding | None:
         species=one.name,
         headline=f"{one.name} ({one.formula}) is asked for as a {asked}; its ground state is expected "
         f"to be a {known}.",
-        consequence="The wrong spin state shifts the number by tens to hundreds of kJ/mol.",
+        consequence=f"The wrong spin state shifts the number by {rough_range(20, 400, case.unit)}.",
         evidence=(
             Evidence(
                 reading="multiplicity",

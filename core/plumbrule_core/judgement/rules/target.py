@@ -1,18 +1,16 @@
-"""What the number is, and whether its bar fits what was asked for."""
+"""Whether the bar fits what was asked for, and where there is none."""
 
 import math
 from collections.abc import Iterator, Mapping
 from typing import Any
 
 from plumbrule_core.documents.findings import Evidence, Finding, Remedy
-from plumbrule_core.documents.questions import BondQuestion, EnergyQuestion
+from plumbrule_core.documents.questions import EnergyQuestion
 from plumbrule_core.judgement.case import Case, Standing
 from plumbrule_core.judgement.rules.base import Rule
 from plumbrule_core.judgement.rules.example import Example, Molecule
 from plumbrule_core.judgement.rules.remedies import add_rungs, advice, change, larger_basis
 from plumbrule_core.judgement.wording import in_unit
-
-SCALES = "zero-point energies of reactions and bonds of ordinary molecules, 3 to 30 kcal/mol: common practice"
 
 
 def _too_wide(case: Case) -> Iterator[Finding]:
@@ -67,23 +65,8 @@ def _total(case: Case) -> Iterator[Finding]:
         headline="A total energy has no useful bar.",
         consequence="It lies far above the exact energy in every basis set; most of that cancels in "
         "differences at one "
-        "recipe. Ask for a reaction, a bond or a gap to get a bar.",
-    )
-
-
-def _electronic(case: Case) -> Iterator[Finding]:
-    if case.question is None or isinstance(case.question, EnergyQuestion):
-        return
-    dissociation = " (Dₑ)" if isinstance(case.question, BondQuestion) else ""
-    yield Finding(
-        code="electronic-energy",
-        severity="note",
-        headline=f"This is an electronic energy{dissociation}, without zero-point energy and heat.",
-        consequence="Do not compare it with a measured value at 0 K or above before zero-point energy "
-        "is added: that is "
-        "3 to 30 kcal/mol (13 to 130 kJ/mol), never negligible, and not part of the bar.",
-        evidence=(Evidence(reading="zero-point energy", value="not included", source=SCALES),),
-        remedies=(advice("Take the zero-point energy from measured or computed vibrations and add it"),),
+        f"recipe. So the accuracy asked for ({case.question.within:g} {case.unit}) is not used. Ask for a "
+        "reaction, a bond or a gap to get a bar.",
     )
 
 
@@ -119,15 +102,5 @@ RULES = (
         judge=_total,
         quiet=(_barred(3.0),),
         loud=(_barred(None, {}),),
-    ),
-    Rule(
-        code="electronic-energy",
-        severity="note",
-        stage="after",
-        reads=("the kind of question",),
-        source=SCALES,
-        judge=_electronic,
-        quiet=(Example(),),
-        loud=(_barred(None),),
     ),
 )

@@ -20,12 +20,12 @@ NO_SPACE = "no orbital is active, so this is the energy of the one determinant"
 class CASCI:
     """In the orbitals that the active space is numbered in, which no energy is optimised for."""
 
-    name: str = "CASCI"
+    name = "CASCI"
     says = "The active space solved exactly in the orbitals as they are; the rest is left uncorrelated."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space")
     rank = 2
-    single_reference: bool = False
+    single_reference = False
     citation = "B. O. Roos, P. R. Taylor and P. E. M. Siegbahn, Chem. Phys. 48, 157 (1980)"
     published: tuple[Published, ...] = (
         tailored_value("T09", -109.0216796),

@@ -27,12 +27,12 @@ from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size,
 class CASSCF:
     """State-specific: the lowest state of the species' spin; inactive orbitals are optimised, core too."""
 
-    name: str = "CASSCF"
+    name = "CASSCF"
     says = "The active space solved exactly in orbitals made for it; the rest is left uncorrelated."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space")
     rank = 4
-    single_reference: bool = False
+    single_reference = False
     citation = (
         "B. O. Roos, P. R. Taylor and P. E. M. Siegbahn, Chem. Phys. 48, 157 (1980); Q. Sun, J. Yang and "
         "G. K.-L. Chan, Chem. Phys. Lett. 683, 291 (2017)"

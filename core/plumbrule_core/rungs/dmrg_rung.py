@@ -13,12 +13,12 @@ from plumbrule_core.rungs.protocol import Given, Kind, Outcome, Published, Size,
 class DMRG:
     """In the orbitals that the active space is numbered in; the bond dimension is the recipe's."""
 
-    name: str = "DMRG"
+    name = "DMRG"
     says = "CASCI for spaces too large to be exact: the density matrix renormalisation group."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space")
     rank = 3
-    single_reference: bool = False
+    single_reference = False
     citation = (
         "S. R. White, Phys. Rev. Lett. 69, 2863 (1992); G. K.-L. Chan and M. Head-Gordon, J. Chem. Phys. "
         "116, 4462 (2002)"

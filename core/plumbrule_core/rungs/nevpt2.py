@@ -24,12 +24,12 @@ OFF_CENTRE = 1e-3
 class NEVPT2:
     """Strongly contracted. Frozen core orbitals, of lowest energy after CASSCF, are left out here alone."""
 
-    name: str = "NEVPT2"
+    name = "NEVPT2"
     says = "CASSCF with the remaining correlation to second order: sound shapes of curves, modest energies."
     kind: Kind = "wave function"
     needs: tuple[str, ...] = ("HF", "Active space", "CASSCF")
     rank = 25
-    single_reference: bool = False
+    single_reference = False
     citation = (
         "C. Angeli, R. Cimiraglia, S. Evangelisti, T. Leininger and J.-P. Malrieu, J. Chem. Phys. 114, 10252 "
         "(2001); C. Angeli, R. Cimiraglia and J.-P. Malrieu, J. Chem. Phys. 117, 9138 (2002)"

@@ -2,7 +2,9 @@
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import count
 
+from plumbrule_core.documents.findings import SpeciesJudgement
 from plumbrule_core.documents.plan import Task
 from plumbrule_core.documents.results import Result
 from plumbrule_core.documents.run_state import TaskState
@@ -43,6 +45,29 @@ def species_of(record: Record) -> tuple[Species, ...]:
     known = {one.content for one in record.brief.species}
     cut = {one.content: one for one in planned if one.content not in known}
     return (*named.values(), *cut.values())
+
+
+def keyed_species(record: Record) -> dict[str, Species]:
+    """The species by a key of their own: the name, or `name (2)` where an earlier one has that name.
+
+    A species that the user named like a fragment of a cut is another species, and loses nothing to it.
+    """
+    found: dict[str, Species] = {}
+    names = {one.name for one in species_of(record)}
+    for one in species_of(record):
+        free = (f"{one.name} ({number})" for number in count(2))
+        key = one.name if one.name not in found else next(k for k in free if k not in names | {*found})
+        found[key] = one
+    return found
+
+
+def judged_of(record: Record, species: Species) -> SpeciesJudgement | None:
+    """What was judged of a species; of two with one name, the one that has its energies."""
+    named = [one for one in record.judgement.species if one.name == species.name]
+    if sum(one.name == species.name for one in species_of(record)) < 2:
+        return next(iter(named), None)
+    own = {rung: energy for rungs in energies_of(record, species).values() for rung, energy in rungs.items()}
+    return next((one for one in named if dict(one.energies) == own), None)
 
 
 def results_of(record: Record, species: Species) -> Iterator[tuple[Task, Result]]:

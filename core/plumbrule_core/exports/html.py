@@ -9,7 +9,14 @@ from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.species import Species, spin_words
 from plumbrule_core.exports import figures, words
 from plumbrule_core.exports.checks import Check, checks_of, unfinished
-from plumbrule_core.exports.facts import energies_of, results_of, sentence_of, species_of, task_rows
+from plumbrule_core.exports.facts import (
+    energies_of,
+    judged_of,
+    results_of,
+    sentence_of,
+    species_of,
+    task_rows,
+)
 from plumbrule_core.exports.record import Record
 from plumbrule_core.judgement.wording import bar
 from plumbrule_core.question_file import write_question
@@ -103,7 +110,7 @@ def _embedded(svg: str) -> str:
 
 
 def _species(record: Record, species: Species) -> Context:
-    judged = next((one for one in record.judgement.species if one.name == species.name), None)
+    judged = judged_of(record, species)
     readings = judged.readings if judged is not None else ()
     computed = [result for _, result in results_of(record, species)]
     return {

@@ -10,7 +10,15 @@ from plumbrule_core.documents.findings import Finding
 from plumbrule_core.documents.results import Result
 from plumbrule_core.documents.species import Species
 from plumbrule_core.errors import PlumbruleError
-from plumbrule_core.exports.facts import TaskRow, energies_of, results_of, sentence_of, species_of, task_rows
+from plumbrule_core.exports.facts import (
+    TaskRow,
+    energies_of,
+    judged_of,
+    keyed_species,
+    results_of,
+    sentence_of,
+    task_rows,
+)
 from plumbrule_core.exports.record import Record
 
 Data = dict[str, Any]
@@ -22,6 +30,8 @@ def record_data(record: Record) -> Data:
     Energies of species in hartree; answer, comparison and budget in the question's unit.
     """
     judgement, question = record.judgement, record.brief.question
+    keyed = keyed_species(record)
+    key_of = {one.content: key for key, one in reversed(keyed.items())}
     told = _present(
         title=record.brief.title,
         answer=judgement.answer.to_data() if judgement.answer is not None else {},
@@ -36,8 +46,8 @@ def record_data(record: Record) -> Data:
         "comparison": [line.to_data() for line in judgement.comparison],
         "budget": [line.to_data() for line in judgement.budget],
         "findings": [finding_data(finding) for finding in judgement.findings],
-        "species": {one.name: _species(record, one) for one in species_of(record)},
-        "tasks": [_task(row) for row in task_rows(record)],
+        "species": {key: _species(record, one) for key, one in keyed.items()},
+        "tasks": [_task(row, key_of[row.task.spec.species.content]) for row in task_rows(record)],
         "provenance": _provenance(record),
     } | told
 
@@ -58,7 +68,7 @@ def _present(**values: Any) -> Data:
 
 
 def _species(record: Record, species: Species) -> Data:
-    judged = next((one for one in record.judgement.species if one.name == species.name), None)
+    judged = judged_of(record, species)
     by_basis = energies_of(record, species)
     return _present(
         formula=species.formula,
@@ -97,12 +107,12 @@ def _array(record: Record, result: Result, name: str) -> np.ndarray | None:
         return None
 
 
-def _task(row: TaskRow) -> Data:
+def _task(row: TaskRow, key: str) -> Data:
     result, forecast = row.result, row.task.forecast
     trace = [[value for value in point if value is not None] for point in row.state.trace]
     return {"trace": trace} | _present(
         id=row.task.id,
-        species=row.task.spec.species.name,
+        species=key,
         rung=row.task.spec.rung,
         basis=row.task.spec.settings.basis,
         state=row.outcome,

@@ -40,6 +40,7 @@ READING_WORDS: Mapping[str, str] = {
     "largest_t2": "Largest doubles amplitude",
     "share_of_triples": "Share of (T) in the correlation energy",
     "triples": "(T) correction",
+    "%TAE[(T)]": "Share of (T) in the atomisation energy",
 }
 
 

@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 from plumbrule_core.documents.amounts import memory
 from plumbrule_core.documents.findings import Verdict
 from plumbrule_core.documents.plan import Forecast, Task
+from plumbrule_core.documents.questions import EnergyQuestion
 from plumbrule_core.exports import Record, words
 from plumbrule_core.exports.facts import energies_of, sentence_of, species_of
 
@@ -66,10 +67,12 @@ def _answer(record: Record) -> str:
     answer, question = record.judgement.answer, record.brief.question
     if answer is None or question is None:
         return "answer: none yet"
-    met = {True: "within", False: "not within", None: "asked for:"}[answer.meets_target]
     number = words.answer(answer.value, answer.uncertainty, answer.unit).replace("−", "-")
-    target = f"{met} {question.within:g} {question.unit}"
-    return f"answer: {number} ({answer.rung}, {answer.basis}; {target})"
+    met = {True: "within", False: "not within", None: "asked for:"}[answer.meets_target]
+    # A total energy is compared with nothing, so what was asked for has no part in it.
+    unused = isinstance(question, EnergyQuestion) and answer.meets_target is None
+    target = "" if unused else f"; {met} {question.within:g} {question.unit}"
+    return f"answer: {number} ({answer.rung}, {answer.basis}{target})"
 
 
 def _verdict(record: Record) -> str:

@@ -5,6 +5,7 @@ from plumbrule_core.documents.findings import Evidence, Finding, Judgement
 from plumbrule_core.documents.results import Reading, ReadingValue
 from plumbrule_core.documents.run_state import TaskState
 from plumbrule_core.documents.species import Species
+from plumbrule_core.units import PER_HARTREE, from_hartree
 from plumbrule_desktop.plots.series import Numbers
 from plumbrule_desktop.state.amounts import MINUS
 
@@ -60,11 +61,19 @@ def value_words(value: ReadingValue | str, unit: str = "") -> str:
 def readings_table(brief: Brief, judgement: Judgement) -> Numbers:
     """One row for each reading of each species: its limit, passed or not, and what a finding said of it."""
     rows = tuple(
-        _row(species.name, reading, judgement.findings, brief.by_name.get(species.name))
+        _row(species.name, _asked(reading, brief), judgement.findings, brief.by_name.get(species.name))
         for species in judgement.species
         for reading in species.readings
     )
     return Numbers(HEADER, rows)
+
+
+def _asked(reading: Reading, brief: Brief) -> Reading:
+    """A reading in hartree in the unit of the question, in which findings give its limit."""
+    unit = brief.question.unit if brief.question else "kJ/mol"
+    if reading.unit != "hartree" or not isinstance(reading.value, float):
+        return reading
+    return Reading(name=reading.name, value=from_hartree(reading.value, unit), unit=unit)
 
 
 def task_readings(task: TaskState) -> Numbers:
@@ -77,7 +86,7 @@ def _row(
     species: str, reading: Reading, findings: tuple[Finding, ...], molecule: Species | None
 ) -> tuple[str, ...]:
     held = _held_against(species, reading.name, findings)
-    limit, meaning = limit_words(reading.name, molecule), ""
+    limit, meaning = limit_words(reading, molecule), ""
     if held is not None:
         finding, evidence = held
         limit = limit if evidence.threshold is None else value_words(evidence.threshold, evidence.unit)
@@ -85,14 +94,19 @@ def _row(
     return (species, reading_name(reading.name), value_words(reading.value, reading.unit), limit, meaning)
 
 
-def limit_words(reading: str, molecule: Species | None) -> str:
-    """`0.02`, or `at least 5 eV` where the reading should stay above; empty where there is no limit."""
+def limit_words(reading: Reading, molecule: Species | None) -> str:
+    """`0.02`, or `at least 5 eV` where the reading should stay above; empty where there is no limit.
+
+    In the unit of the reading.
+    """
     from plumbrule_core.session import reading_limit  # loaded by the desk long before anything is judged
 
-    limit = None if molecule is None else reading_limit(reading, molecule)
+    limit = None if molecule is None else reading_limit(reading.name, molecule)
     if limit is None:
         return ""
     value, unit, below = limit
+    if unit == "hartree" and reading.unit in PER_HARTREE:
+        value, unit = value * PER_HARTREE[reading.unit], reading.unit
     return value_words(value, unit) if below else f"at least {value_words(value, unit)}"
 
 

@@ -3,13 +3,23 @@
 import csv
 import io
 import json
+from dataclasses import replace
 
 import pytest
 
 from plumbrule_core import geometry
+from plumbrule_core.documents.brief import Brief
+from plumbrule_core.documents.plan import Machine
+from plumbrule_core.documents.questions import BondQuestion
+from plumbrule_core.documents.recipe import Recipe
+from plumbrule_core.documents.run_state import RunState
+from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.errors import Unreadable
-from plumbrule_core.exports import EXPORTS, save
+from plumbrule_core.exports import EXPORTS, save, words
 from plumbrule_core.exports.record_json import record_data
+from plumbrule_core.judgement import judge
+from plumbrule_core.judgement.rules import RULES
+from plumbrule_core.planning import make_plan
 from plumbrule_core.question_file import read_question
 
 RECORDS = ("record", "empty_record", "unasked_record")
@@ -126,6 +136,34 @@ def test_the_outcome_keeps_the_layout_of_the_contract(record):
     assert data["findings"][0]["remedies"] == ["Add the next basis set"]
     assert data["tasks"][0]["trace"] == [[1, -1.0], [2, -1.1, 1e-6]]
     assert data["provenance"]["machine"] == {"cores": 2, "memory_gb": 24.6}
+
+
+def test_every_reading_of_one_determinant_has_words():
+    read = next(rule.reads for rule in RULES if rule.code == "one-determinant")
+    assert set(read) - {"converged"} <= set(words.READING_WORDS)
+
+
+def test_a_species_named_like_a_fragment_and_the_fragment_both_keep_their_place(record):
+    # In H2 cut between its atoms the fragment is called `h2, atom 1`; the user's helium has that name too.
+    one, two = (Atom(symbol="H", x=0.0, y=0.0, z=z) for z in (0.0, 0.74))
+    helium = Species(name="h2, atom 1", atoms=(Atom(symbol="He", x=0.0, y=0.0, z=0.0),))
+    brief = Brief(
+        question=BondQuestion(species="h2", cut=(1, 2), within=4.0),
+        species=(Species(name="h2", atoms=(one, two)), helium),
+        recipe=Recipe(basis=("cc-pVDZ",), rungs=("HF",)),
+    )
+    plan = make_plan(brief, Machine(cores=1, memory_mb=4000.0, disk_mb=1e5))
+    assert plan.faults == ()
+    bare = replace(
+        record, brief=brief, plan=plan, state=RunState(), results={}, judgement=judge(brief, plan, {})
+    )
+    data = record_data(bare)
+    assert {key: one["formula"] for key, one in data["species"].items()} == {
+        "h2": "H2",
+        "h2, atom 1": "He",
+        "h2, atom 1 (2)": "H",
+    }
+    assert {task["species"] for task in data["tasks"]} == {"h2", "h2, atom 1 (2)"}
 
 
 def test_a_file_is_replaced_whole_or_not_at_all(tmp_path, monkeypatch):

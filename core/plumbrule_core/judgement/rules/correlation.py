@@ -81,8 +81,12 @@ def _diradical(case: Case, view: SpeciesView) -> Finding | None:
         rungs=case.doubtful(view),
         headline=f"{view.name} is a diradical in its unrestricted solution: two orbitals hold one "
         "electron each.",
-        consequence="A singlet with two open orbitals needs two determinants; one of them gives an "
-        "energy that is far too high.",
+        consequence="A singlet with two open orbitals needs two determinants; "
+        + (
+            "HF and MP2 have one and lie far too high. With two electrons, CCSD holds both and is exact."
+            if view.exact_from_ccsd
+            else "one of them gives an energy that is far too high."
+        ),
         evidence=(evidence_of("uhf_fractional", value, limit),),
         remedies=active_space(case),
     )

@@ -106,7 +106,8 @@ def _unstable(case: Case, view: SpeciesView) -> Finding | None:
         headline=f"{view.name}: an unrestricted solution lies {amount(depth, case.unit)} below the "
         "restricted one.",
         consequence=(
-            "The electron pairs are loosening; coupled cluster often repairs this, MP2 does not."
+            "The electron pairs are loosening; coupled cluster "
+            f"{'of two electrons' if view.exact_from_ccsd else 'often'} repairs this, MP2 does not."
             if deep
             else "So little that it does not show in the number; it is the earliest sign of a loosening pair."
         ),

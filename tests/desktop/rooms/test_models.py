@@ -143,3 +143,15 @@ def test_occupations_show_those_that_say_something():
 def test_the_readings_of_a_task_are_listed_as_they_come():
     state = TaskState(task="x", readings=(Reading(name="D1", value=0.0313),))
     assert task_readings(state).rows == (("D1", "0.0313"),)
+
+
+def test_a_depth_and_its_limit_are_both_in_the_unit_of_the_question(made: SimpleNamespace):
+    # 0.02 hartree are 52.5 kJ/mol, the limit of 0.008 hartree 21.0 kJ/mol (CODATA 2022)
+    judgement = made.judged()
+    depth = (Reading(name="instability_depth", value=0.02, unit="hartree"),)
+    deep = judgement.species[0].model_copy(update={"readings": depth})
+    row = readings_table(
+        made.nitrogen(), judgement.model_copy(update={"findings": (), "species": (deep,)})
+    ).rows[0]
+    assert all(words.endswith("kJ/mol") for words in row[2:4])
+    assert [float(words.split()[0]) for words in row[2:4]] == pytest.approx([52.51, 21.00], abs=0.05)

@@ -6,6 +6,7 @@ from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QHBoxLayout, QPushButton, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.findings import Evidence, Finding, Remedy, Severity
+from plumbrule_core.documents.sources import cited
 from plumbrule_desktop.models.readings import reading_name
 from plumbrule_desktop.widgets.card import Card, label
 from plumbrule_desktop.widgets.flow import FlowLayout
@@ -35,9 +36,7 @@ class FindingCard(Card):
         self.column.addWidget(label(finding.headline, "heading"))
         self.column.addWidget(label(finding.consequence))
         for evidence in finding.evidence:
-            line = label(evidence_words(evidence), "muted")
-            line.setToolTip(evidence.source)
-            self.column.addWidget(line)
+            self.column.addWidget(label(evidence_words(evidence), "muted"))
         if finding.remedies:
             self.column.addLayout(self._remedies(finding.remedies))
 
@@ -93,9 +92,11 @@ class FindingsView(QWidget):
 
 
 def evidence_words(evidence: Evidence) -> str:
-    """`T1 is 0.031; the limit is 0.02 (Lee and Taylor 1989)`."""
+    """`T1: 0.031; the limit is 0.02 (Lee and Taylor 1989)`; only a source that can be looked up is named."""
     value = f"{evidence.value:.3g}" if isinstance(evidence.value, float) else evidence.value
     unit = f" {evidence.unit}" if evidence.unit else ""
     limit = f"; the limit is {evidence.threshold:.3g}{unit}" if evidence.threshold is not None else ""
-    source = f" ({evidence.source})" if evidence.source else ""
-    return f"{reading_name(evidence.reading)}: {value}{unit}{limit}{source}"
+    source = cited(evidence.source)
+    behind = f" ({source})" if source else ""
+    name = reading_name(evidence.reading)
+    return f"{name[:1].upper()}{name[1:]}: {value}{unit}{limit}{behind}"

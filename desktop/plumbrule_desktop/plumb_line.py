@@ -10,10 +10,11 @@ from PySide6.QtWidgets import QSizePolicy, QStyle, QVBoxLayout, QWidget
 from plumbrule_core.documents.findings import Judgement, Level, Verdict
 from plumbrule_desktop.look import colours
 from plumbrule_desktop.state.desk import Desk
+from plumbrule_desktop.state.progress import ANSWERED
 from plumbrule_desktop.state.wording import answer_words
 from plumbrule_desktop.widgets.card import label
 
-WIDTH = 148
+WIDTH = 164
 STILL_VARIABLE = "PLUMBRULE_STILL"
 """Set to anything, it keeps the bob from swinging (tests, and people whom movement disturbs)."""
 DEGREES: dict[Level, float] = {"unknown": 0.0, "sound": 0.0, "take care": 20.0, "do not rely on it": 74.0}
@@ -116,7 +117,7 @@ class PlumbLine(QWidget):
         self.answer = label("", "heading")
         self.headline = label("", "muted")
         column = QVBoxLayout(self)
-        column.setContentsMargins(4, 12, 12, 12)
+        column.setContentsMargins(12, 12, 12, 12)
         column.setSpacing(6)
         column.addWidget(self.bob)
         for line in (self.words, self.answer, self.headline):
@@ -126,6 +127,7 @@ class PlumbLine(QWidget):
         desk.judgement_changed.connect(self.refresh)
         desk.plan_changed.connect(self.refresh)
         desk.brief_changed.connect(self.refresh)
+        desk.run_changed.connect(self.refresh)
         self.refresh()
 
     def refresh(self) -> None:
@@ -133,7 +135,7 @@ class PlumbLine(QWidget):
         judgement = self._desk.judgement
         verdict = judgement.verdict if judgement else Verdict(level="unknown")
         self.bob.show_level(verdict.level)
-        self.words.setText(WORDS[verdict.level])
+        self.words.setText(self._so_far() if verdict.level == "unknown" else WORDS[verdict.level])
         c = colours(self)
         self.words.setStyleSheet(
             f"color: {c.muted if verdict.level == 'unknown' else c.level(verdict.level)}"
@@ -145,6 +147,12 @@ class PlumbLine(QWidget):
         self.setAccessibleDescription(
             ". ".join(filter(None, (self.words.text(), self.answer.text(), self.headline.text())))
         )
+
+    def _so_far(self) -> str:
+        """What is known where there is no verdict: how many tasks are done."""
+        tasks = self._desk.state.tasks.values()
+        done = sum(one.state in ANSWERED for one in tasks)
+        return f"No answer yet, {done} of {len(tasks)} done" if done else WORDS["unknown"]
 
 
 def _headline(verdict: Verdict) -> str:

@@ -21,12 +21,13 @@ from plumbrule_core.documents.plan import Plan
 from plumbrule_core.documents.questions import Clause
 from plumbrule_desktop.question_popups import popup_for
 from plumbrule_desktop.state.desk import Desk
+from plumbrule_desktop.state.progress import left_of
 from plumbrule_desktop.state.wording import forecast_details, forecast_words
 from plumbrule_desktop.widgets.card import label
 from plumbrule_desktop.widgets.flow import FlowLayout
 from plumbrule_desktop.widgets.popup import Popup
 
-CHOOSER_WIDTH = 210
+CHOOSER_WIDTH = 270
 NO_MOLECULE = (Clause(text="Put a molecule in, then ask what you want to know."),)
 NO_QUESTION = (Clause(text="Ask: "), Clause(text="what do you want to know?", key="kind"))
 
@@ -227,11 +228,7 @@ class QuestionLine(QFrame):
         return ready and not desk.running and bool(self._left().tasks)
 
     def _left(self) -> Plan:
-        """The tasks of the plan that Run would compute: not answered yet, not converged or not checked."""
-        plan, known = self._desk.plan or Plan(), self._desk.state.tasks
-        over = {key: task.result for key, task in known.items() if task.state in ("done", "reused")}
-        answered = {key for key, result in over.items() if result is None or result.settled}
-        return Plan(tasks=tuple(task for task in plan.tasks if task.id not in answered))
+        return left_of(self._desk.plan or Plan(), self._desk.state)
 
     def _dress_button(self) -> None:
         desk = self._desk

@@ -131,6 +131,7 @@ class Window(QMainWindow):
     def _connect(self) -> None:
         desk = self.desk
         self.segments.chosen.connect(self.show_page)
+        desk.begun.connect(self.banner.clear)
         desk.message.connect(self.banner.say)
         desk.casebook_changed.connect(self._refresh_casebook)
         for signal in (desk.casebook_changed, desk.brief_changed, desk.plan_changed, desk.run_changed):

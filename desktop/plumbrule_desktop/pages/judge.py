@@ -1,6 +1,5 @@
 """The Judge page: the answer, how the rungs compare, the budget, the readings, the findings and remedies."""
 
-from PySide6.QtCore import Qt
 from PySide6.QtGui import QGuiApplication, QResizeEvent
 from PySide6.QtWidgets import QBoxLayout, QHBoxLayout, QPushButton, QVBoxLayout, QWidget
 
@@ -12,8 +11,8 @@ from plumbrule_desktop.pages.judge_views import JudgeViews
 from plumbrule_desktop.plots.pace import Pace
 from plumbrule_desktop.state.answer_text import answer_text
 from plumbrule_desktop.state.desk import Desk
-from plumbrule_desktop.state.difference import differences
-from plumbrule_desktop.state.progress import ANSWERED
+from plumbrule_desktop.state.difference import differences, fault_words, needs_only
+from plumbrule_desktop.state.progress import ANSWERED, left_of
 from plumbrule_desktop.widgets.card import Card, label
 from plumbrule_desktop.widgets.scrolling import scroll_down
 
@@ -22,36 +21,44 @@ NARROW = 900
 
 
 class ChangedStrip(Card):
-    """Says what was changed since the last run, and offers to run or to take it back."""
+    """Says what was changed since there was an answer, and offers to take it back."""
 
     def __init__(self, desk: Desk, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._desk = desk
         self._brief_id: int | None = None
         self._before = Brief()
+        self._answered = False
         self.words = label("")
         self.undo = QPushButton("Undo")
         self.undo.clicked.connect(desk.undo)
-        self.run = QPushButton("Run")
-        self.run.setProperty("role", "primary")
-        self.run.clicked.connect(desk.run)
         row = QHBoxLayout()
         row.addWidget(self.words, 1)
         row.addWidget(self.undo)
-        row.addWidget(self.run)
         self.column.addLayout(row)
         self.hide()
 
     def refresh(self) -> None:
-        """Compare the question with the one that was run or opened last."""
+        """Compare the question with the one that was run or opened last, if that one had an answer."""
         desk = self._desk
         if desk.brief_id != self._brief_id or desk.running or self._before == Brief():
-            self._brief_id, self._before = desk.brief_id, desk.brief
-        changes = differences(self._before, desk.brief)
+            self._brief_id, self._before, self._answered = desk.brief_id, desk.brief, False
+        if desk.brief == self._before and desk.judgement is not None:
+            self._answered = desk.judgement.answer is not None
+        changes = differences(self._before, desk.brief) if self._answered else ()
         self.setVisible(bool(changes))
-        self.words.setText("Changed: " + "; ".join(changes) + ". Run it to see what that does to the answer.")
-        self.run.setEnabled(not desk.running and not desk.faults)
+        self.words.setText(" ".join(filter(None, (f"Changed: {'; '.join(changes)}.", self._what_now()))))
         self.undo.setEnabled(desk.casebook.undo_label is not None)
+
+    def _what_now(self) -> str:
+        desk = self._desk
+        if needs_only(self._before, desk.brief):
+            return "The answer is judged against the new need; nothing has to be computed."
+        if desk.plan is None or desk.faults:
+            return ""
+        if left_of(desk.plan, desk.state).tasks:
+            return "Run it to see what that does to the answer."
+        return "What it needs was computed before; nothing has to be computed."
 
 
 class JudgePage(QWidget):
@@ -62,9 +69,6 @@ class JudgePage(QWidget):
         self._desk = desk
         self.empty = label("", "title")
         self.empty_line = label("", "muted")
-        self.run = QPushButton("Run")
-        self.run.setProperty("role", "primary")
-        self.run.clicked.connect(desk.run)
         self.changed = ChangedStrip(desk)
         self.answer = AnswerCard()
         self.copy = QPushButton("Copy the answer as text")
@@ -76,15 +80,14 @@ class JudgePage(QWidget):
         self._pace = Pace(self, self._refresh)
         for signal in (desk.brief_changed, desk.plan_changed, desk.run_changed, desk.judgement_changed):
             signal.connect(self._pace.ask)
-        for signal in (desk.brief_changed, desk.run_changed, desk.casebook_changed):
             signal.connect(self.changed.refresh)
+        desk.casebook_changed.connect(self.changed.refresh)
         self._pace.ask()
 
     def _arrange(self) -> None:
         self._nothing = Card()
         self._nothing.column.addWidget(self.empty)
         self._nothing.column.addWidget(self.empty_line)
-        self._nothing.column.addWidget(self.run, 0, Qt.AlignmentFlag.AlignLeft)
         copy_row = QHBoxLayout()
         copy_row.addWidget(self.copy)
         copy_row.addStretch(1)
@@ -135,8 +138,7 @@ class JudgePage(QWidget):
 
     def _show_nothing(self) -> None:
         desk = self._desk
-        faults = tuple(str(fault) for fault in desk.faults)
-        self.run.setVisible(not faults and not desk.running and desk.plan is not None)
+        faults = tuple(fault_words(fault) for fault in desk.faults)
         if faults:
             self.empty.setText("There is no answer, because the question cannot be run yet")
             self.empty_line.setText("\n".join(faults))
@@ -148,7 +150,7 @@ class JudgePage(QWidget):
         else:
             self.empty.setText("No answer yet")
             self.empty_line.setText(
-                "After a run this page says what the number is, how far it can be trusted, "
+                "Press Run above. After a run this page says what the number is, how far it can be trusted, "
                 "and what to do if it cannot."
             )
 

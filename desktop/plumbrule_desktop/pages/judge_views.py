@@ -38,6 +38,7 @@ class MethodsView(QWidget):
         needed = within(brief, answer) if answer else None
         self.plot.show_data(comparison(judgement, unit, needed))
         self.panel.refresh()
+        self.panel.setVisible(bool(judgement.comparison))
         self._legend.setText(
             "Shaded: the accuracy needed. Filled: the rung the answer stands on. Cross: do not rely on it."
             if judgement.comparison
@@ -64,6 +65,7 @@ class BudgetView(QWidget):
         data = budget(judgement, unit)
         self.plot.show_data(data)
         self.panel.refresh()
+        self.panel.setVisible(bool(judgement.budget))
         legend = (
             "Bars add in quadrature; the dashed line is their sum. Arrow: a known shift, not part of the bar."
         )

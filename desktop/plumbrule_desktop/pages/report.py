@@ -11,6 +11,7 @@ from plumbrule_desktop.plots.pace import Pace
 from plumbrule_desktop.plots.pictures import file_name
 from plumbrule_desktop.state.answer_text import HAZARD, answer_text
 from plumbrule_desktop.state.desk import Desk, title_of
+from plumbrule_desktop.state.difference import fault_words
 from plumbrule_desktop.widgets.card import Card, label
 from plumbrule_desktop.widgets.flow import FlowLayout
 
@@ -51,10 +52,11 @@ class ReportPage(QWidget):
         page.addWidget(head)
         page.addWidget(self.empty)
         page.addWidget(self.browser, 1)
+        page.addStretch(0)
 
     def _refresh(self) -> None:
         self._show_buttons()
-        faults = tuple(str(fault) for fault in self._desk.faults)
+        faults = tuple(fault_words(fault) for fault in self._desk.faults)
         ready = self._desk.plan is not None and not faults
         for button in (*self.buttons.values(), self.copy):
             button.setEnabled(ready)

@@ -23,6 +23,7 @@ from plumbrule_desktop.pages.watch_task import TaskView
 from plumbrule_desktop.plots.pace import Pace
 from plumbrule_desktop.state.clerk import Clerk
 from plumbrule_desktop.state.desk import Desk
+from plumbrule_desktop.state.difference import fault_words
 from plumbrule_desktop.state.progress import Overall, Stopwatch, overall
 from plumbrule_desktop.state.wording import duration, forecast_words
 from plumbrule_desktop.widgets.card import Card, label
@@ -160,7 +161,7 @@ class WatchPage(QWidget):
         self.splitter.setVisible(can_run)
         if plan is None or not can_run:
             self.button.hide()
-            self._say(*_no_plan(plan, tuple(str(fault) for fault in self._desk.faults)))
+            self._say(*_no_plan(plan, tuple(fault_words(fault) for fault in self._desk.faults)))
             return
         whole = overall(plan, self._desk.state, self._watch, now, self._running)
         self.bar.setValue(round(1000 * whole.fraction))

@@ -135,7 +135,8 @@ def _why_no_trace(state: TaskState) -> str:
 
 def _cost(task: Task, state: TaskState, used: float | None) -> str:
     forecast = task.forecast
-    time = f"forecast {duration(forecast.seconds_low)} to {duration(forecast.seconds_high)}"
+    ends = dict.fromkeys((duration(forecast.seconds_low), duration(forecast.seconds_high)))
+    time = f"forecast {' to '.join(ends)}"
     if used is not None:
         time = f"{duration(used)} used, {time}"
     size = f"forecast {memory(forecast.memory_mb)}"

@@ -11,7 +11,6 @@ from PySide6.QtCore import QObject
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.edits import edited
 from plumbrule_core.documents.findings import Edit, Remedy
-from plumbrule_core.documents.plan import Machine
 from plumbrule_core.documents.species import Species
 from plumbrule_core.errors import PlumbruleError, Refused
 from plumbrule_desktop.state.changes import with_species
@@ -162,6 +161,10 @@ class Desk(Running):
 
     def edit(self, edits: Iterable[Edit], says: str) -> bool:
         """Change the chosen question; `says` names the step. False, with a message, where it cannot be."""
+        self.begun.emit()
+        return self._edit(edits, says)
+
+    def _edit(self, edits: Iterable[Edit], says: str) -> bool:
         brief_id = self._brief_id
         if brief_id is None or self._refuse_read_only():
             return False
@@ -190,14 +193,16 @@ class Desk(Running):
 
     def add_species(self, species: Iterable[Species], says: str) -> None:
         """Put molecules into the chosen question, each under a name that is still free."""
-        self.edit(with_species(self._brief, tuple(species)), says)
+        self._edit(with_species(self._brief, tuple(species)), says)
 
     def undo(self) -> None:
         """Take the last step back."""
+        self.begun.emit()
         self._with_session(lambda session: (session.undo(), ids_of(session))[1], self._stepped)
 
     def redo(self) -> None:
         """Make the step again."""
+        self.begun.emit()
         self._with_session(lambda session: (session.redo(), ids_of(session))[1], self._stepped)
 
     def _stepped(self, ids: tuple[int, ...]) -> None:
@@ -225,6 +230,7 @@ class Desk(Running):
         self, work: Callable[[], tuple[Species, ...]], then: Callable[[tuple[Species, ...]], None]
     ) -> None:
         """Read molecules in a thread; a message says why they cannot be read."""
+        self.begun.emit()
         self._reader.do(work, then, self._say)
 
     def read_text(self, text: str, name: str, then: Callable[[tuple[Species, ...]], None]) -> None:
@@ -267,12 +273,6 @@ class Desk(Running):
                 then()
 
         self._clerk.do(lambda: session.export(brief_id, path), written, self._say)
-
-    def machine(self, then: Callable[[Machine], None]) -> None:
-        """Hand what this computer offers to `then`."""
-        session = self._session
-        if session is not None:
-            self._clerk.do(session.machine, then, self._say)
 
 
 def _writes(session: "Session", path: Path | None) -> bool:

@@ -1,9 +1,11 @@
-"""What differs between two briefs, in words: for saying what a remedy has changed."""
+"""What differs between two briefs, and what is wrong with one, in words without the keys of a file."""
 
 from collections.abc import Iterator
 from typing import Any
 
 from plumbrule_core.documents.brief import Brief
+from plumbrule_core.documents.faults import Fault
+from plumbrule_desktop.state.amounts import unit_words
 
 WORDS = {
     "recipe.basis": "basis",
@@ -13,7 +15,6 @@ WORDS = {
     "recipe.density_fitting": "density fitting",
     "recipe.relativity": "relativity",
     "question.within": "accuracy needed",
-    "question.unit": "unit",
     "question.kind": "question",
     "title": "title",
 }
@@ -27,11 +28,30 @@ def differences(before: Brief, after: Brief) -> tuple[str, ...]:
     return (*lines, *_moved(before, after))
 
 
+def needs_only(before: Brief, after: Brief) -> bool:
+    """Whether nothing but the accuracy needed, its unit or the title differs: no number changes by that."""
+    if before.question is None or after.question is None:
+        return False
+    need = {"within": after.question.within, "unit": after.question.unit}
+    same = {"question": before.question.model_copy(update=need), "title": after.title}
+    return before.model_copy(update=same) == after
+
+
+def fault_words(fault: Fault) -> str:
+    """A fault as a sentence, with the name of what it stands at in place of its key."""
+    place = "" if fault.where.split(".")[0] in ("", "question") else f"{_path_words(fault.where)}: "
+    words = f"{place}{fault.says}"
+    return f"{words[:1].upper()}{words[1:]}" + ("" if words.endswith((".", "?", "!")) else ".")
+
+
 def _keyed(brief: Brief) -> dict[str, Any]:
     data = brief.to_data()
     data["species"] = {
         one["name"]: {k: v for k, v in one.items() if k not in ("name", "atoms")} for one in data["species"]
     }
+    question = data.get("question")
+    if question:
+        question["within"] = f"{question['within']:g} {unit_words(question.pop('unit'))}"
     return data
 
 

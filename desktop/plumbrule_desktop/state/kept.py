@@ -35,6 +35,8 @@ class Kept(QObject):
     run_changed = Signal(object)
     """A frozenset of the task ids that moved; empty at the start and the end of a run."""
     judgement_changed = Signal()
+    begun = Signal()
+    """A person begins something new: what the last message said is over."""
     message = Signal(str, str)
     """A sentence for people, and its kind: `note` or `error`."""
 

@@ -15,6 +15,13 @@ ALMOST = 0.97
 """A running task that has used up its forecast is shown this far, never as finished."""
 
 
+def left_of(plan: Plan, state: RunState) -> Plan:
+    """The tasks of a plan that Run would compute: not answered yet, not converged or not checked."""
+    over = {key: task.result for key, task in state.tasks.items() if task.state in ANSWERED}
+    answered = {key for key, result in over.items() if result is None or result.settled}
+    return Plan(tasks=tuple(task for task in plan.tasks if task.id not in answered))
+
+
 class Stopwatch:
     """When each task was first seen running and when it ended, in seconds of a clock that never goes back."""
 

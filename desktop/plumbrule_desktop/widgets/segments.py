@@ -2,7 +2,7 @@
 
 from collections.abc import Iterable
 
-from PySide6.QtCore import Signal
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtWidgets import QButtonGroup, QFrame, QHBoxLayout, QToolButton, QWidget
 
 
@@ -27,6 +27,8 @@ class Segments(QFrame):
             button.setAccessibleName(name)
             self._group.addButton(button, place)
             row.addWidget(button)
+            button.toggled.connect(lambda on, button=button: _reach(button, on))
+            _reach(button, False)
         self._group.idClicked.connect(self.chosen)
         self._group.button(0).setChecked(True)
 
@@ -44,3 +46,8 @@ class Segments(QFrame):
         found = self._group.button(place)
         assert isinstance(found, QToolButton)
         return found
+
+
+def _reach(button: QToolButton, on: bool) -> None:
+    """Tab comes to the button that is on; from there the arrow keys go to the others."""
+    button.setFocusPolicy(Qt.FocusPolicy.StrongFocus if on else Qt.FocusPolicy.ClickFocus)

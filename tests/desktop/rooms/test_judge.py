@@ -29,9 +29,10 @@ def _show(qtbot, page: JudgePage, desk, made: SimpleNamespace, level: str) -> No
     qtbot.waitUntil(lambda: page.answer.isVisible() and page.answer.level.text() == words)
 
 
-def test_before_a_run_the_page_says_what_will_stand_here_and_offers_run(qtbot, page: JudgePage):
+def test_before_a_run_the_page_says_what_will_stand_here_and_where_run_is(qtbot, page: JudgePage):
     qtbot.waitUntil(lambda: page.empty.text() == "No answer yet")
-    assert page.run.isVisible()
+    assert "Press Run above" in page.empty_line.text()
+    assert "Run" not in [button.text() for button in page.findChildren(QPushButton)]
     assert not page.answer.isVisible()
 
 
@@ -94,7 +95,10 @@ def test_findings_stand_gravest_first_with_their_limit_and_source(qtbot, page, d
     assert [card.finding.severity for card in page.findings.cards] == ["stop", "care"]
     texts = [part.text() for part in page.findings.cards[0].findChildren(QLabel)]
     assert f"{WORDS['stop']} \u00b7 nitrogen" in texts
-    assert "Largest doubles amplitude: 0.48; the limit is 0.2 (common practice, no source)" in texts
+    assert "Largest doubles amplitude: 0.48; the limit is 0.2" in texts
+    assert "T1: 0.024; the limit is 0.02 (Lee and Taylor 1989)" in [
+        part.text() for part in page.findings.cards[1].findChildren(QLabel)
+    ]
 
 
 def test_every_view_can_be_reached_from_the_keyboard_and_only_one_is_seen(qtbot, page, desk, made):
@@ -125,9 +129,51 @@ def test_a_changed_question_is_said_in_words_and_run_is_offered(qtbot, page, des
     desk.put(brief=changed)
     assert page.changed.isVisible()
     assert "basis: cc-pVTZ \u2192 cc-pVQZ" in page.changed.words.text()
-    assert page.changed.run.isEnabled()
     desk.put(brief=made.nitrogen())
     assert not page.changed.isVisible()
+
+
+def test_what_has_to_be_computed_after_a_change_is_said_as_it_is(qtbot, page, desk, made):
+    _show(qtbot, page, desk, made, "take care")
+    larger = edited(desk.brief, (Edit(path="recipe.basis", value=["cc-pVQZ"]),))
+    desk.put(brief=larger, state=made.state_of(desk.plan))
+    assert page.changed.words.text().endswith("Run it to see what that does to the answer.")
+    settled = edited(made.nitrogen(), (Edit(path="question.within", value=64.0),))
+    desk.put(brief=settled, state=made.state_of(desk.plan, *["done"] * 8))
+    assert page.changed.words.text() == (
+        "Changed: accuracy needed: 4 kJ/mol \u2192 64 kJ/mol. "
+        "The answer is judged against the new need; nothing has to be computed."
+    )
+
+
+def test_a_question_that_never_had_an_answer_has_not_changed_any(qtbot, page, desk):
+    desk.put(brief=edited(desk.brief, (Edit(path="recipe.basis", value=["cc-pVQZ"]),)))
+    qtbot.waitUntil(lambda: page.empty.isVisible())
+    assert not page.changed.isVisible()
+
+
+def test_a_plot_without_data_is_not_shown_and_nothing_of_it_can_be_saved(qtbot, page, desk, made):
+    known = made.judged()
+    part = known.model_copy(update={"answer": None, "comparison": (), "budget": ()})
+    desk.put(state=made.state_of(desk.plan, "done", "stopped"), judgement=part)
+    qtbot.waitUntil(lambda: page.findings.isVisible())
+    assert not page.views.views[0].panel.isVisible()
+    page.views.turn_to(1)
+    assert not page.views.views[1].panel.isVisible()
+    _show(qtbot, page, desk, made, "take care")
+    qtbot.waitUntil(lambda: page.views.views[1].panel.isVisible())
+
+
+def test_the_buttons_of_a_finding_are_reached_by_tab(qtbot, page, desk, made):
+    _show(qtbot, page, desk, made, "take care")
+    with qtbot.waitActive(page):
+        page.activateWindow()
+    page.views.tabs.setFocus()
+    met = []
+    for _ in range(12):
+        qtbot.keyClick(QApplication.focusWidget(), Qt.Key.Key_Tab)
+        met.append(getattr(QApplication.focusWidget(), "text", str)())
+    assert "Use the next larger basis" in met
 
 
 def test_the_answer_is_copied_as_text(qtbot, page, desk, made):

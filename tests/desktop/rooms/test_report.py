@@ -108,8 +108,10 @@ def test_a_dialogue_that_is_cancelled_writes_nothing(qtbot, page: ReportPage, de
 def test_a_question_that_cannot_run_has_no_report_and_says_why(qtbot, page: ReportPage, desk):
     desk.put(brief=Brief(), plan=Plan())
     qtbot.waitUntil(lambda: page.empty.isVisible())
-    assert "no question is asked yet" in page.empty.text()
+    assert "No question is asked yet." in page.empty.text()
+    assert "question:" not in page.empty.text()
     assert not page.browser.isVisible()
+    assert page.empty.y() < 200, "the words stand at the top, under the buttons"
     assert not page.buttons[".html"].isEnabled()
 
 

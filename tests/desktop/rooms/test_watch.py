@@ -105,7 +105,8 @@ def test_when_all_is_done_the_page_leads_on_to_the_judgement(qtbot, page: WatchP
 def test_a_question_that_cannot_run_says_every_fault_and_offers_no_run(qtbot, page: WatchPage, desk):
     desk.put(brief=Brief(), plan=Plan(), state=RunState())
     qtbot.waitUntil(lambda: page.headline.text() == "This question cannot be run yet")
-    assert "no question is asked yet" in page.line.text()
+    assert "No question is asked yet." in page.line.text()
+    assert "question:" not in page.line.text()
     assert not page.button.isVisible()
     assert not page.list.isVisible()
 

@@ -6,6 +6,7 @@ from PySide6.QtGui import QColor
 from PySide6.QtWidgets import QApplication, QPushButton
 
 from plumbrule_core.documents.findings import Edit, Evidence, Finding, Judgement, Remedy, Verdict
+from plumbrule_core.documents.run_state import RunState, TaskState
 from plumbrule_core.elements import ELEMENTS
 from plumbrule_desktop import look
 from plumbrule_desktop.actions import ROWS
@@ -84,6 +85,16 @@ def test_the_plumb_line_says_by_its_lean_and_in_words_how_far_the_number_can_be_
     assert line.bob.degrees == DEGREES[level]
     assert WORDS[level] in line.accessibleDescription()
     assert line.toolTip() == "First."
+
+
+def test_without_a_verdict_the_plumb_line_says_how_much_is_done(qtbot, desk: Desk) -> None:
+    line = PlumbLine(desk)
+    qtbot.addWidget(line)
+    assert line.words.text() == "Nothing known yet"
+    states = ("done", "reused", "stopped", "waiting")
+    desk._state = RunState(tasks={state: TaskState(task=state, state=state) for state in states})
+    desk.run_changed.emit(frozenset())
+    assert line.words.text() == "No answer yet, 2 of 4 done"
 
 
 def test_the_worse_the_verdict_the_further_the_bob_hangs_from_upright() -> None:

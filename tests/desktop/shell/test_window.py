@@ -94,6 +94,33 @@ def test_a_dropped_file_becomes_a_card_and_an_unreadable_one_a_message(
     assert "broken.xyz" in window.banner.texts[0] or "line" in window.banner.texts[0]
 
 
+def test_a_message_goes_with_the_next_thing_that_is_done(qtbot, with_water: Window) -> None:
+    window = with_water
+    for act in (
+        lambda: build_page(window).intake.text("N", "Paste a molecule"),
+        lambda: window.desk.edit(asking.asked(window.desk.brief, "energy"), "Ask"),
+        window.actions_by_key["undo"].trigger,
+    ):
+        build_page(window).intake.text("no molecule at all", "Paste a molecule")
+        qtbot.waitUntil(lambda: bool(window.banner.texts), timeout=LONG)
+        act()
+        settled(qtbot, window)
+        qtbot.waitUntil(lambda: not window.banner.texts, timeout=LONG)
+
+
+def test_functionals_are_folded_away_until_they_are_wanted(qtbot, with_water: Window) -> None:
+    ladder = build_page(with_water).recipe.ladder
+    folded = ladder.functionals
+    first = next(card for name, card in ladder.cards.items() if folded.isAncestorOf(card))
+    assert folded.isVisible()
+    assert not first.isVisible()
+    folded.button.setFocus()
+    qtbot.keyClick(folded.button, Qt.Key.Key_Space)
+    assert first.isVisible()
+    first.box.click()
+    assert folded.button.text() == "Density functionals, to compare with (1 chosen)"
+
+
 def test_a_wrong_multiplicity_is_said_beside_its_field_and_right_again_after_undo(
     qtbot, with_water: Window
 ) -> None:
@@ -115,6 +142,8 @@ def test_a_wrong_multiplicity_is_said_beside_its_field_and_right_again_after_und
 
 def test_typing_in_a_card_keeps_the_keyboard_in_its_field(qtbot, with_water: Window) -> None:
     (card,) = build_page(with_water).species.cards
+    with qtbot.waitActive(with_water):
+        with_water.activateWindow()
     card.charge.setFocus()
     qtbot.keyClick(card.charge, Qt.Key.Key_Up)
     qtbot.keyClick(card.charge, Qt.Key.Key_Up)
@@ -133,6 +162,19 @@ def test_pages_are_switched_by_the_keyboard(qtbot, window: Window) -> None:
         assert window.stack.currentIndex() == place
         assert window.segments.current == place
         assert window.stack.currentWidget() is window.pages[PAGES[place]]
+
+
+def test_tab_comes_to_the_page_that_is_shown_and_the_arrows_go_on(qtbot, window: Window) -> None:
+    with qtbot.waitActive(window):
+        window.activateWindow()
+    window.show_page(2)
+    reached = [window.segments.button(place) for place in range(4)]
+    by_tab = [button.text() for button in reached if button.focusPolicy() & Qt.FocusPolicy.TabFocus]
+    assert by_tab == ["Judge"]
+    reached[2].setFocus()
+    qtbot.keyClick(reached[2], Qt.Key.Key_Right)
+    assert window.stack.currentIndex() == 3
+    assert QApplication.focusWidget() is reached[3]
 
 
 def test_the_question_is_asked_and_changed_through_its_underlined_words(

@@ -1,7 +1,9 @@
 import pytest
 
+from plumbrule_core.documents.faults import Fault
 from plumbrule_core.documents.findings import Answer
 from plumbrule_core.documents.plan import Forecast
+from plumbrule_desktop.state.difference import fault_words
 from plumbrule_desktop.state.wording import answer_words, duration, forecast_details, forecast_words
 
 
@@ -37,3 +39,10 @@ def test_an_answer_shows_no_more_digits_than_its_uncertainty_leaves() -> None:
 def test_an_answer_without_uncertainty_claims_none() -> None:
     answer = Answer(value=-76.241308, unit="hartree", rung="CCSD(T)", basis="cc-pVTZ")
     assert answer_words(answer) == "-76.24131 hartree"
+
+
+def test_a_fault_is_a_sentence_without_the_key_of_a_file() -> None:
+    asked = Fault(where="question", says="no question is asked yet")
+    assert fault_words(asked) == "No question is asked yet."
+    charge = Fault(where="species.water.charge", says="must be a whole number")
+    assert fault_words(charge) == "Water, charge: must be a whole number."

@@ -8,8 +8,10 @@ from plumbrule_desktop.state import changes
 from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.state.wording import forecast_details, forecast_words
 from plumbrule_desktop.widgets.card import Card, label
+from plumbrule_desktop.widgets.folded import Folded
 
 FUNCTIONAL = "density functional"
+FUNCTIONALS = "Density functionals, to compare with"
 
 
 class RungCard(Card):
@@ -60,6 +62,7 @@ class Ladder(QWidget):
         self._column = QVBoxLayout(self)
         self._column.setContentsMargins(0, 0, 0, 0)
         self._column.setSpacing(6)
+        self._rebuild(())
 
     def refresh(self) -> None:
         """Show the rungs that are built and those that the recipe asks for, with their costs."""
@@ -67,11 +70,13 @@ class Ladder(QWidget):
         offered = {rung.name: rung for rung in desk.offer.rungs}
         chosen = desk.brief.recipe.rungs
         names = (*offered, *(name for name in chosen if name not in offered))
+        compared = [name for name in chosen if name in offered and offered[name].kind == FUNCTIONAL]
         if tuple(self.cards) != names:
             self._rebuild(names)
         costs = costs_by_rung(desk.plan)
         for name, card in self.cards.items():
             card.show_rung(name in chosen, costs.get(name), desk.casebook.read_only)
+        self.functionals.show_count(len(compared))
 
     def _rebuild(self, names: tuple[str, ...]) -> None:
         while (item := self._column.takeAt(0)) is not None:
@@ -89,10 +94,11 @@ class Ladder(QWidget):
         functionals = [name for name in names if name in offered and offered[name].kind == FUNCTIONAL]
         for name in reversed([name for name in names if name not in functionals]):
             self._column.addWidget(self.cards[name])
-        if functionals:
-            self._column.addWidget(label("Density functionals, to compare with", "muted"))
+        self.functionals = Folded(FUNCTIONALS)
+        self.functionals.setVisible(bool(functionals))
+        self._column.addWidget(self.functionals)
         for name in functionals:
-            self._column.addWidget(self.cards[name])
+            self.functionals.column.addWidget(self.cards[name])
 
     def _toggle(self, name: str, on: bool) -> None:
         desk = self._desk

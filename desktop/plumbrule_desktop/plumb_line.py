@@ -9,9 +9,9 @@ from PySide6.QtWidgets import QSizePolicy, QStyle, QVBoxLayout, QWidget
 
 from plumbrule_core.documents.findings import Judgement, Level, Verdict
 from plumbrule_desktop.look import colours
+from plumbrule_desktop.state.amounts import energy
 from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.state.progress import ANSWERED
-from plumbrule_desktop.state.wording import answer_words
 from plumbrule_desktop.widgets.card import label
 
 WIDTH = 164
@@ -152,7 +152,9 @@ class PlumbLine(QWidget):
         """What is known where there is no verdict: how many tasks are done."""
         tasks = self._desk.state.tasks.values()
         done = sum(one.state in ANSWERED for one in tasks)
-        return f"No answer yet, {done} of {len(tasks)} done" if done else WORDS["unknown"]
+        judgement = self._desk.judgement
+        opening = "So far" if judgement and judgement.answer else "No answer yet"
+        return f"{opening}, {done} of {len(tasks)} done" if done else WORDS["unknown"]
 
 
 def _headline(verdict: Verdict) -> str:
@@ -164,4 +166,5 @@ def _headline(verdict: Verdict) -> str:
 
 
 def _answer(judgement: Judgement | None) -> str:
-    return answer_words(judgement.answer) if judgement and judgement.answer else ""
+    answer = judgement.answer if judgement else None
+    return energy(answer.value, answer.unit, answer.uncertainty) if answer else ""

@@ -1,6 +1,7 @@
 """The question line: which question, its sentence with underlined controls, the forecast, and Run or Stop."""
 
 from collections.abc import Iterable
+from itertools import pairwise
 
 from PySide6.QtCore import QSize, Qt
 from PySide6.QtGui import QAction
@@ -46,11 +47,12 @@ class ClauseButton(QPushButton):
 
 
 class Sentence(QWidget):
-    """The sentence; each clause with a key is a button that opens its editor."""
+    """The sentence; each clause with a key is a button that opens its editor. Tab comes here from `before`."""
 
-    def __init__(self, desk: Desk, parent: QWidget | None = None) -> None:
+    def __init__(self, desk: Desk, before: QWidget, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._desk = desk
+        self._before = before
         self._flow = FlowLayout(self, spacing=0, line_spacing=4)
         self._shown: tuple[object, ...] = ()
         self.clauses: dict[str, QPushButton] = {}
@@ -70,6 +72,8 @@ class Sentence(QWidget):
             self._flow.addWidget(
                 self._control(clause, read_only, wrong) if clause.key else _words(clause.text)
             )
+        for one, following in pairwise((self._before, *self.clauses.values())):
+            QWidget.setTabOrder(one, following)
         if focused in self.clauses:
             self.clauses[focused].setFocus()
         self.setAccessibleName("".join(clause.text for clause in clauses))
@@ -175,7 +179,7 @@ class QuestionLine(QFrame):
         self.setProperty("role", "plain")
         self._desk = desk
         self.chooser = Chooser(desk)
-        self.sentence = Sentence(desk)
+        self.sentence = Sentence(desk, self.chooser)
         self.trouble = label("", "fault")
         self.forecast = label("", "muted", wrap=False)
         self.forecast.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)

@@ -3,7 +3,6 @@
 import math
 
 from plumbrule_core.documents.amounts import memory
-from plumbrule_core.documents.findings import Answer
 from plumbrule_core.documents.plan import Forecast
 from plumbrule_core.units import EnergyUnit
 
@@ -44,11 +43,3 @@ def number(value: float, unit: EnergyUnit, uncertainty: float | None = None) -> 
     else:
         digits = {"hartree": 5, "eV": 3, "cm-1": 0}.get(unit, 1)
     return f"{value:.{digits}f}"
-
-
-def answer_words(answer: Answer) -> str:
-    """`941.2 \u00b1 6.3 kJ/mol`."""
-    value = number(answer.value, answer.unit, answer.uncertainty)
-    if answer.uncertainty is None:
-        return f"{value} {answer.unit}"
-    return f"{value} \u00b1 {number(answer.uncertainty, answer.unit, answer.uncertainty)} {answer.unit}"

@@ -13,6 +13,7 @@ from PySide6.QtWidgets import QApplication, QMessageBox, QPushButton
 from plumbrule_core.documents.species import Species
 from plumbrule_desktop import look
 from plumbrule_desktop.page_stack import PAGES
+from plumbrule_desktop.pages.build.ladder import FUNCTIONALS, SPACES
 from plumbrule_desktop.pages.build.page import BuildPage
 from plumbrule_desktop.scene.three_d import YES
 from plumbrule_desktop.state import asking, changes
@@ -108,9 +109,23 @@ def test_a_message_goes_with_the_next_thing_that_is_done(qtbot, with_water: Wind
         qtbot.waitUntil(lambda: not window.banner.texts, timeout=LONG)
 
 
-def test_functionals_are_folded_away_until_they_are_wanted(qtbot, with_water: Window) -> None:
+def test_the_message_about_one_file_outlives_the_others_that_came_with_it(
+    qtbot, window: Window, tmp_path: Path
+) -> None:
+    good, bad = tmp_path / "water.xyz", tmp_path / "broken.xyz"
+    good.write_text(WATER)
+    bad.write_text("3\n\nO 0 0\n")
+    build_page(window).intake.files([bad, good])
+    qtbot.waitUntil(lambda: len(window.desk.brief.species) == 1, timeout=LONG)
+    settled(qtbot, window)
+    assert len(window.banner.texts) == 1
+
+
+@pytest.mark.parametrize("title", [FUNCTIONALS, SPACES])
+def test_what_few_need_is_folded_away_until_it_is_wanted(qtbot, with_water: Window, title: str) -> None:
     ladder = build_page(with_water).recipe.ladder
-    folded = ladder.functionals
+    folded = ladder.folded[title]
+    assert ladder.cards["CCSD(T)"].isVisible()
     first = next(card for name, card in ladder.cards.items() if folded.isAncestorOf(card))
     assert folded.isVisible()
     assert not first.isVisible()
@@ -118,7 +133,7 @@ def test_functionals_are_folded_away_until_they_are_wanted(qtbot, with_water: Wi
     qtbot.keyClick(folded.button, Qt.Key.Key_Space)
     assert first.isVisible()
     first.box.click()
-    assert folded.button.text() == "Density functionals, to compare with (1 chosen)"
+    assert folded.button.text() == f"{title} (1 chosen)"
 
 
 def test_a_wrong_multiplicity_is_said_beside_its_field_and_right_again_after_undo(
@@ -175,6 +190,19 @@ def test_tab_comes_to_the_page_that_is_shown_and_the_arrows_go_on(qtbot, window:
     qtbot.keyClick(reached[2], Qt.Key.Key_Right)
     assert window.stack.currentIndex() == 3
     assert QApplication.focusWidget() is reached[3]
+
+
+def test_tab_goes_through_the_question_line_as_it_is_read(qtbot, with_water: Window) -> None:
+    window = with_water
+    window.desk.edit(asking.asked(window.desk.brief, "energy"), "Ask")
+    settled(qtbot, window)
+    with qtbot.waitActive(window):
+        window.activateWindow()
+    line = window.question_line
+    line.chooser.setFocus()
+    for wanted in (*line.sentence.clauses.values(), line.button):
+        qtbot.keyClick(QApplication.focusWidget(), Qt.Key.Key_Tab)
+        assert QApplication.focusWidget() is wanted
 
 
 def test_the_question_is_asked_and_changed_through_its_underlined_words(

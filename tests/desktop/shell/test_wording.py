@@ -1,10 +1,10 @@
 import pytest
 
 from plumbrule_core.documents.faults import Fault
-from plumbrule_core.documents.findings import Answer
 from plumbrule_core.documents.plan import Forecast
+from plumbrule_desktop.state.amounts import energy
 from plumbrule_desktop.state.difference import fault_words
-from plumbrule_desktop.state.wording import answer_words, duration, forecast_details, forecast_words
+from plumbrule_desktop.state.wording import duration, forecast_details, forecast_words
 
 
 @pytest.mark.parametrize(
@@ -30,15 +30,12 @@ def test_a_forecast_names_time_and_memory_and_its_details_name_the_range() -> No
 
 
 def test_an_answer_shows_no_more_digits_than_its_uncertainty_leaves() -> None:
-    answer = Answer(value=941.2345, unit="kJ/mol", rung="CCSD(T)", basis="cc-pVTZ", uncertainty=6.31)
-    assert answer_words(answer) == "941.2 \u00b1 6.3 kJ/mol"
-    rough = answer.model_copy(update={"uncertainty": 23.0})
-    assert answer_words(rough) == "941 \u00b1 23 kJ/mol"
+    assert energy(941.2345, "kJ/mol", 6.31) == "941.2 \u00b1 6.3 kJ/mol"
+    assert energy(941.2345, "kJ/mol", 23.0) == "941 \u00b1 23 kJ/mol"
 
 
 def test_an_answer_without_uncertainty_claims_none() -> None:
-    answer = Answer(value=-76.241308, unit="hartree", rung="CCSD(T)", basis="cc-pVTZ")
-    assert answer_words(answer) == "-76.24131 hartree"
+    assert energy(-76.241308, "hartree") == "\u221276.24131 hartree"
 
 
 def test_a_fault_is_a_sentence_without_the_key_of_a_file() -> None:

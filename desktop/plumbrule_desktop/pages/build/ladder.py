@@ -1,5 +1,8 @@
 """The ladder: a card for each rung, with what it is and what it will cost."""
 
+from collections.abc import Iterable
+from typing import TYPE_CHECKING
+
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QCheckBox, QHBoxLayout, QVBoxLayout, QWidget
 
@@ -10,8 +13,14 @@ from plumbrule_desktop.state.wording import forecast_details, forecast_words
 from plumbrule_desktop.widgets.card import Card, label
 from plumbrule_desktop.widgets.folded import Folded
 
+if TYPE_CHECKING:
+    from plumbrule_core.session import RungCard as Offered
+
 FUNCTIONAL = "density functional"
+DETECTION = "detection"
+"""Kinds of rungs that the core offers."""
 FUNCTIONALS = "Density functionals, to compare with"
+SPACES = "Active spaces, where one determinant fails"
 
 
 class RungCard(Card):
@@ -70,13 +79,13 @@ class Ladder(QWidget):
         offered = {rung.name: rung for rung in desk.offer.rungs}
         chosen = desk.brief.recipe.rungs
         names = (*offered, *(name for name in chosen if name not in offered))
-        compared = [name for name in chosen if name in offered and offered[name].kind == FUNCTIONAL]
         if tuple(self.cards) != names:
             self._rebuild(names)
         costs = costs_by_rung(desk.plan)
         for name, card in self.cards.items():
             card.show_rung(name in chosen, costs.get(name), desk.casebook.read_only)
-        self.functionals.show_count(len(compared))
+        for title, folded in self.folded.items():
+            folded.show_count(len(self._groups[title].intersection(chosen)))
 
     def _rebuild(self, names: tuple[str, ...]) -> None:
         while (item := self._column.takeAt(0)) is not None:
@@ -91,14 +100,17 @@ class Ladder(QWidget):
             card = RungCard(name, rung.says if rung else "", rung.citation if rung else "")
             card.wanted.connect(self._toggle)
             self.cards[name] = card
-        functionals = [name for name in names if name in offered and offered[name].kind == FUNCTIONAL]
-        for name in reversed([name for name in names if name not in functionals]):
+        self.folded = {title: Folded(title) for title in (SPACES, FUNCTIONALS)}
+        self._groups = groups(self._desk.offer.rungs)
+        inside = frozenset().union(*self._groups.values())
+        for name in reversed([name for name in names if name not in inside]):
             self._column.addWidget(self.cards[name])
-        self.functionals = Folded(FUNCTIONALS)
-        self.functionals.setVisible(bool(functionals))
-        self._column.addWidget(self.functionals)
-        for name in functionals:
-            self.functionals.column.addWidget(self.cards[name])
+        for title, folded in self.folded.items():
+            self._column.addWidget(folded)
+            folded.setVisible(bool(self._groups[title]))
+            for name in names:
+                if name in self._groups[title]:
+                    folded.column.addWidget(self.cards[name])
 
     def _toggle(self, name: str, on: bool) -> None:
         desk = self._desk
@@ -109,6 +121,18 @@ class Ladder(QWidget):
             says = f"{'Add' if on else 'Remove'} {name}"
             desk.edit(changes.with_rung(desk.brief, order, name, on), says)
         self.refresh()
+
+
+def groups(rungs: "Iterable[Offered]") -> dict[str, frozenset[str]]:
+    """The rungs that are folded away under each title: those in an active space, and the functionals."""
+    spaces: set[str] = set()
+    functionals: set[str] = set()
+    for rung in rungs:
+        if rung.kind == DETECTION or spaces.intersection(rung.needs):
+            spaces.add(rung.name)
+        elif rung.kind == FUNCTIONAL:
+            functionals.add(rung.name)
+    return {SPACES: frozenset(spaces), FUNCTIONALS: frozenset(functionals)}
 
 
 def costs_by_rung(plan: Plan | None) -> dict[str, Forecast]:

@@ -10,6 +10,7 @@ from plumbrule_core.documents.results import Result
 from plumbrule_core.documents.run_state import TaskState
 from plumbrule_core.documents.species import Species
 from plumbrule_core.exports.record import Record
+from plumbrule_core.rungs import SPACE
 
 
 @dataclass(frozen=True, slots=True)
@@ -79,9 +80,11 @@ def results_of(record: Record, species: Species) -> Iterator[tuple[Task, Result]
 
 
 def energies_of(record: Record, species: Species) -> dict[str, dict[str, float]]:
-    """Basis to rung to total energy in hartree, the smaller basis first."""
+    """Basis to rung to total energy in hartree, the smaller basis first; detections are left out."""
     found: dict[str, dict[str, float]] = {}
     for task, result in results_of(record, species):
+        if task.spec.rung == SPACE:
+            continue
         found.setdefault(task.spec.settings.basis, {})[task.spec.rung] = result.energy
     return found
 

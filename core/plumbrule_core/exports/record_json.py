@@ -2,14 +2,10 @@
 
 from typing import Any
 
-import numpy as np
-
 from plumbrule_core import __version__
 from plumbrule_core.documents.amounts import gigabytes
 from plumbrule_core.documents.findings import Finding
-from plumbrule_core.documents.results import Result
 from plumbrule_core.documents.species import Species
-from plumbrule_core.errors import PlumbruleError
 from plumbrule_core.exports.facts import (
     TaskRow,
     energies_of,
@@ -20,6 +16,7 @@ from plumbrule_core.exports.facts import (
     task_rows,
 )
 from plumbrule_core.exports.record import Record
+from plumbrule_core.exports.space_json import array_of, space_data
 
 Data = dict[str, Any]
 
@@ -80,31 +77,20 @@ def _species(record: Record, species: Species) -> Data:
         energies=by_basis[[*by_basis][-1]] if by_basis else {},
         energies_by_basis=by_basis if len(by_basis) > 1 else {},
         readings={reading.name: reading.value for reading in judged.readings} if judged is not None else {},
-        orbitals=_orbitals(record, species),
+        **{"orbitals": _orbitals(record, species), **space_data(record, species)},
     )
 
 
 def _orbitals(record: Record, species: Species) -> Data:
     """Orbital energies in hartree of the reference at the largest basis, numbered from 1."""
     fields = [result for task, result in results_of(record, species) if task.spec.rung == "HF"]
-    energies = _array(record, fields[-1], "orbital_energies") if fields else None
+    energies = array_of(record, fields[-1], "orbital_energies") if fields else None
     if energies is None:
         return {}
     if energies.ndim == 1:
         return {"energies": energies.tolist(), "numbers": list(range(1, len(energies) + 1))}
     up, down = energies.tolist()
     return {"energies_up": up, "energies_down": down, "numbers": list(range(1, len(up) + 1))}
-
-
-def _array(record: Record, result: Result, name: str) -> np.ndarray | None:
-    ref = result.arrays.get(name)
-    if ref is None:
-        return None
-    try:
-        return record.array(ref)
-    except (PlumbruleError, KeyError):
-        # An array that was lost with a damaged casebook is absent, as one that was never computed.
-        return None
 
 
 def _task(row: TaskRow, key: str) -> Data:

@@ -14,6 +14,7 @@ from plumbrule_core.judgement.answer import LadderValue
 from plumbrule_core.judgement.budget_basis import basis_line
 from plumbrule_core.judgement.budget_method import method_line
 from plumbrule_core.judgement.budget_physics import core_line, geometry_line, relativity_line, spin_orbit_line
+from plumbrule_core.judgement.budget_space import space_line
 from plumbrule_core.judgement.budget_tables import energy_class
 from plumbrule_core.judgement.case import Case
 
@@ -26,6 +27,7 @@ def budget(case: Case, best: LadderValue, values: Sequence[LadderValue]) -> tupl
     lines = (
         basis_line(case, best, kind),
         method_line(case, best, values, kind),
+        space_line(case, best),
         core_line(case, kind),
         relativity_line(case, kind),
         geometry_line(case),

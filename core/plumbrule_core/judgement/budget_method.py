@@ -13,6 +13,9 @@ CAUSE = "beyond the top rung"
 TWO_SIGMA_OF_MEAN = 2.5
 """Two standard deviations of a normal error, from its mean absolute value: 2 sqrt(pi / 2)."""
 
+DOUBLES = {"CCSD(T)": "CCSD", "TCCSD(T)": "TCCSD"}
+"""Rungs that end in perturbative triples, with the rung below them."""
+
 _BEYOND = TABLES["beyond"]
 
 
@@ -20,7 +23,7 @@ def method_line(case: Case, best: LadderValue, values: Sequence[LadderValue], ki
     """CCSD(T): the larger of a floor and a share of (T); below it the statistics of what is left out."""
     if best.rung in _BEYOND["exact"] or _exact(case, best.rung):
         return None
-    if best.rung == "CCSD(T)":
+    if best.rung in DOUBLES:
         return _beyond_triples(case, best, values)
     if best.rung in _BEYOND["floors"]:
         size = in_unit(_BEYOND["floors"][best.rung], case.unit)
@@ -34,19 +37,22 @@ def _exact(case: Case, rung: str) -> bool:
 
 
 def _beyond_triples(case: Case, best: LadderValue, values: Sequence[LadderValue]) -> BudgetLine:
-    floor = in_unit(_BEYOND["floor"], case.unit)
-    doubles = next((value for value in values if value.rung == "CCSD"), None)
+    wider = {"factor": 1.0, "source": _BEYOND["source"]}
+    wider = wider if best.rung == "CCSD(T)" else _BEYOND["tailored"]
+    floor = in_unit(wider["factor"] * _BEYOND["floor"], case.unit)
+    doubles = next((value for value in values if value.rung == DOUBLES[best.rung]), None)
     if doubles is None:
         how = "the floor; the size of (T) is not known"
-        return BudgetLine(cause=CAUSE, size=floor, unit=case.unit, how=how, source=_BEYOND["source"])
+        return BudgetLine(cause=CAUSE, size=floor, unit=case.unit, how=how, source=wider["source"])
     triples = from_hartree(abs(best.hartree - doubles.hartree), case.unit)
-    share = _BEYOND["share_of_triples"] * triples
+    part = wider["factor"] * _BEYOND["share_of_triples"]
+    share = part * triples
     how = (
-        f"a tenth of what (T) contributes ({triples:.3g} {case.unit})"
+        f"{100 * part:.0f} % of what (T) contributes ({triples:.3g} {case.unit})"
         if share > floor
-        else "the floor for CCSD(T)"
+        else f"the floor for {best.rung}"
     )
-    return BudgetLine(cause=CAUSE, size=max(floor, share), unit=case.unit, how=how, source=_BEYOND["source"])
+    return BudgetLine(cause=CAUSE, size=max(floor, share), unit=case.unit, how=how, source=wider["source"])
 
 
 def _left_out(case: Case, rung: str, kind: str) -> BudgetLine:

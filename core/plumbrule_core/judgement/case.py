@@ -14,7 +14,7 @@ from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.documents.results import Reading, ReadingValue, Result
 from plumbrule_core.documents.species import Species
 from plumbrule_core.elements import ELEMENTS
-from plumbrule_core.rungs import RUNGS
+from plumbrule_core.rungs import RUNGS, stands_on_space
 from plumbrule_core.units import EnergyUnit
 
 Key = tuple[str, str]
@@ -44,8 +44,12 @@ class SpeciesView:
 
     @cached_property
     def energies(self) -> Mapping[str, float]:
-        """Rung to energy in hartree, each at the largest basis that has it, in the order of the ladder."""
-        found = {rung: self.energy(rung) for rung in dict.fromkeys(rung for rung, _ in self.results)}
+        """Rung to energy in hartree, each at the largest basis that has it, in the order of the ladder.
+
+        What a detection computes is compared with nothing, so it is left out.
+        """
+        computed = (rung for rung, _ in self.results if RUNGS[rung].kind != "detection")
+        found = {rung: self.energy(rung) for rung in dict.fromkeys(computed)}
         return {rung: energy for rung, energy in found.items() if energy is not None}
 
     @cached_property
@@ -90,8 +94,12 @@ class SpeciesView:
         return self.correlated_electrons <= 2
 
     def inexact(self, rung: str) -> bool:
-        """Whether the rung leaves something out: of two electrons only HF, MP2 and the functionals do."""
-        return not self.exact_from_ccsd or rung in ("HF", "MP2") or RUNGS[rung].kind != "wave function"
+        """Whether the rung leaves something out.
+
+        Of two electrons only HF, MP2, the functionals and what works in an active space do.
+        """
+        partial = rung in ("HF", "MP2") or RUNGS[rung].kind != "wave function" or stands_on_space(rung)
+        return not self.exact_from_ccsd or partial
 
     @property
     def share_of_triples(self) -> float | None:

@@ -6,7 +6,7 @@ from plumbrule_core.documents.findings import SEVERITIES, Answer, Finding, Level
 from plumbrule_core.judgement.answer import LadderValue
 from plumbrule_core.judgement.case import Case, SpeciesView
 from plumbrule_core.judgement.wording import in_unit, listed
-from plumbrule_core.rungs import RUNGS
+from plumbrule_core.rungs import RUNGS, stands_on_space
 
 LEVELS: dict[Severity, Level] = {"note": "sound", "care": "take care", "stop": "do not rely on it"}
 
@@ -54,20 +54,36 @@ def overall(
         return _without_answer(case, findings)
     touching = [one for one in findings if applies(one, best.rung)]
     telling = [one for one in touching if one.severity != "note"]
-    severity = _with_lost_rungs(case, best, findings, worst(touching))
-    reasons = tuple(dict.fromkeys(one.headline for one in telling))
+    lost = _lost_rungs(case, best, findings)
+    stepped = _stepped_down(best, lost, findings) if lost and not stopped(findings, best.rung) else ()
+    severity = worst(touching)
+    if stepped and severity == "note":
+        severity = "care"
+    reasons = tuple(dict.fromkeys([*(one.headline for one in telling), *stepped]))
     if severity == "note":
         return _calm(case, best, answer, findings)
-    headline = reasons[0] if reasons else f"A rung above {best.rung} is not to be used."
+    headline = reasons[0]
     return Verdict(level=LEVELS[severity], headline=_led(severity, headline), reasons=reasons or (headline,))
 
 
-def _with_lost_rungs(
-    case: Case, best: LadderValue, findings: Sequence[Finding], severity: Severity
-) -> Severity:
-    """An answer that had to step down from a stopped rung is at least to be taken with care."""
-    above = [n for n in case.wave_functions if RUNGS[n].rank > RUNGS[best.rung].rank and stopped(findings, n)]
-    return "care" if above and severity == "note" else severity
+def _lost_rungs(case: Case, best: LadderValue, findings: Sequence[Finding]) -> tuple[str, ...]:
+    """The rungs that are stopped and that the answer would rather stand on, the best of them last.
+
+    Where it stands on an active space, these are all that stand on one determinant.
+    """
+    above = [n for n in case.wave_functions if _better(n, best.rung)]
+    return tuple(name for name in above if stopped(findings, name))
+
+
+def _better(rung: str, best: str) -> bool:
+    moved = RUNGS[rung].single_reference and stands_on_space(best)
+    return RUNGS[rung].rank > RUNGS[best].rank or (moved and rung != "HF")
+
+
+def _stepped_down(best: LadderValue, lost: Sequence[str], findings: Sequence[Finding]) -> tuple[str, ...]:
+    """Why the answer does not stand on the best of the lost rungs."""
+    why = next(one.headline for one in findings if one.severity == "stop" and applies(one, lost[-1]))
+    return (f"{why.rstrip('.')}, so the answer stands on {best.rung} and not on {lost[-1]}.",)
 
 
 def _led(severity: Severity, headline: str) -> str:
@@ -99,6 +115,8 @@ def _fine(case: Case, best: LadderValue, findings: Sequence[Finding]) -> str:
     described = [view.name for view in case.views if view.inexact(best.rung)]
     if not described:
         return _exact(case.views, best.rung, [n for n in case.wave_functions if stopped(findings, n)])
+    if not RUNGS[best.rung].single_reference:
+        return f"nothing speaks against {best.rung}"
     if len(described) == len(case.views) > 1:
         return "one determinant describes every molecule"
     exact = listed(view.name for view in case.views if not view.inexact(best.rung))
@@ -161,6 +179,8 @@ def of_species(case: Case, view: SpeciesView, rung: str | None, findings: Sequen
     ):
         return Verdict(level="unknown", headline="So far nothing speaks against it.")
     calm = f"One determinant describes {view.name}."
+    if rung is not None and not RUNGS[rung].single_reference:
+        calm = f"Nothing speaks against {rung} of {view.name}."
     if rung is not None and not view.inexact(rung):
         about = [one for one in findings if one.species == view.name]
         unused = [name for name in case.wave_functions if stopped(about, name)]

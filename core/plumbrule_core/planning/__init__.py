@@ -1,10 +1,12 @@
 """From a brief to a plan: which tasks answer the question, in which order, at what price."""
 
 from collections.abc import Mapping
+from dataclasses import replace
 from importlib import metadata
 from platform import python_version
 
 from plumbrule_core import __version__
+from plumbrule_core.basis_sets import BASES
 from plumbrule_core.documents.base import digest_of
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.plan import Machine, Plan, Settings, Task, TaskSpec
@@ -15,7 +17,9 @@ from plumbrule_core.planning.decisions import fits_density, notes, sets_of
 from plumbrule_core.planning.recipe_faults import recipe_faults
 from plumbrule_core.planning.sizes import size_of, tables_of
 from plumbrule_core.planning.solutions import standing, unmixed
-from plumbrule_core.rungs import RUNGS
+from plumbrule_core.planning.spaces import active_counts, request_of, space_faults
+from plumbrule_core.rungs import RUNGS, stands_on_space
+from plumbrule_core.rungs.protocol import Size
 
 __all__ = [
     "closed",
@@ -59,12 +63,13 @@ def make_plan(brief: Brief, machine: Machine) -> Plan:
     asked = brief.faults()
     species = needed_species(brief) if not asked else brief.species
     faults = asked + recipe_faults(brief.recipe, species)
+    faults += tuple(space_faults(brief.recipe, species if not faults else (), machine))
     if faults or brief.question is None:
         return Plan(faults=faults)
     fitting = fits_density(brief.recipe, species)
     rungs = closed(brief.recipe.rungs)
     tasks = tuple(
-        _task(one, rung, _settings(brief.recipe, basis.name, fitting), machine)
+        _task(one, rung, _settings(brief.recipe, basis.name, fitting), brief.recipe, machine)
         for basis in sets_of(brief.recipe)
         for one in species
         for rung in rungs
@@ -104,13 +109,21 @@ def _settings(recipe: Recipe, basis: str, fitting: bool) -> Settings:
     )
 
 
-def _task(species: Species, rung: str, settings: Settings, machine: Machine) -> Task:
+def _task(species: Species, rung: str, settings: Settings, recipe: Recipe, machine: Machine) -> Task:
     versions = f"{versions_that_matter()}, tables {tables_of(species, settings)}"
-    spec = TaskSpec(species=species, rung=rung, settings=settings, versions=versions)
+    space = request_of(recipe) if stands_on_space(rung) else None
+    spec = TaskSpec(species=species, rung=rung, settings=settings, versions=versions, space=space)
     return Task(
         id=spec.identity,
         spec=spec,
         needs=tuple(need for need in closed((rung,)) if need != rung),
         chain=digest_of([species.content, settings.to_data()]),
-        forecast=RUNGS[rung].forecast(size_of(species, settings), machine),
+        forecast=RUNGS[rung].forecast(_size(spec), machine),
+    )
+
+
+def _size(spec: TaskSpec) -> Size:
+    size = size_of(spec.species, spec.settings)
+    return replace(
+        size, active=active_counts(spec.species, BASES[spec.settings.basis], size.frozen, spec.space)
     )

@@ -8,7 +8,7 @@ from plumbrule_core.documents.questions import BondQuestion, EnergyQuestion
 from plumbrule_core.documents.recipe import Recipe
 from plumbrule_core.documents.species import Species, spin_words
 from plumbrule_core.planning.sizes import elements_of, frozen_of, functions_of
-from plumbrule_core.rungs import RUNGS
+from plumbrule_core.rungs import RUNGS, SPACE
 
 FITTING_FROM = 300
 """Basis functions of the largest species from which density fitting is chosen: common practice, no source."""
@@ -43,7 +43,7 @@ def notes(
         *_assumed(species),
         *_spin_states(brief, species),
         *_fitting(brief.recipe, species, fitting),
-        *_active_space(brief.recipe),
+        *_active_space(brief.recipe, species, rungs),
         *_left_out(brief, species),
     )
 
@@ -90,9 +90,16 @@ def _fitting(recipe: Recipe, species: tuple[Species, ...], fitting: bool) -> Ite
         yield f"No density fitting: there is no fitting set for {', '.join(_unfitted(recipe, species))}."
 
 
-def _active_space(recipe: Recipe) -> Iterator[str]:
-    if recipe.active_space is not None and recipe.active_space.choice == "propose":
-        yield "No active space is proposed: not built yet in this version, and no rung here uses one."
+def _active_space(recipe: Recipe, species: tuple[Species, ...], rungs: tuple[str, ...]) -> Iterator[str]:
+    asked = recipe.active_space
+    if SPACE not in rungs:
+        if asked is not None and asked.choice != "none":
+            yield "No rung of this recipe works in an active space, so what it says of one has no effect."
+    elif len(species) > 1 and (asked is None or asked.choice == "propose"):
+        yield (
+            "Each species gets its own active space, as its orbitals ask for it; make them equal with "
+            "choice = 'set'."
+        )
 
 
 def _left_out(brief: Brief, species: tuple[Species, ...]) -> Iterator[str]:

@@ -78,10 +78,6 @@ def _closed_shell_faults(recipe: Recipe, species: tuple[Species, ...]) -> Iterat
 
 
 def _later_faults(recipe: Recipe) -> Iterator[Fault]:
-    if recipe.active_space is not None and recipe.active_space.choice == "set":
-        yield Fault(
-            where="recipe.active_space.choice", says=f"an active space of your own is {NOT_BUILT}; use 'none'"
-        )
     if recipe.geometry is not None:
         says = f"optimising first is {NOT_BUILT}; give optimised geometries and leave [recipe.geometry] out"
         yield Fault(where="recipe.geometry", says=says)

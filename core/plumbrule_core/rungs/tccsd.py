@@ -21,10 +21,11 @@ SIZES_FORECAST = 3
 class TCCSD:
     """CCSD tailored by the wave function of the active space, followed as the space grows.
 
-    The energy is taken from the chosen space where the species has partners whose spaces are of the same size
-    (energies that are subtracted must stand on the same size), or where no growth is asked for; else from the
-    size at which the curve is flattest: of neighbouring sizes whose TCCSD energies differ least, the larger
-    (own rule, `correlation.settling`). Sizes without a usable reference or convergence do not take part.
+    The energy is taken from the chosen space where the user set it, where the species has partners whose
+    spaces are of the same size (energies that are subtracted must stand on the same size), or where no growth
+    is asked for; else from the size at which the curve is flattest: of neighbouring sizes whose TCCSD
+    energies differ least, the larger (own rule, `correlation.settling`). Sizes without a usable reference or
+    convergence do not take part.
     """
 
     name: str = "TCCSD"
@@ -92,7 +93,7 @@ def size_taken(bench: Bench, request: SpaceRequest | None) -> Tailored:
     """The size that the energy is taken from, by the rule of `TCCSD`."""
     chosen = next(size for size in bench.tailored if size.space == bench.space)
     usable = [size for size in bench.tailored if size.energy is not None and size.converged]
-    if not chosen.converged or (request is not None and request.partners):
+    if not chosen.converged or (request is not None and (request.choice == "set" or request.partners)):
         return chosen
     return usable[settled([size.energy for size in usable if size.energy is not None])]
 
@@ -107,10 +108,15 @@ def space_used(bench: Bench, request: SpaceRequest | None) -> dict[str, str]:
     }
     energies = [size.energy for size in bench.tailored if size.energy is not None and size.converged]
     if len(energies) > 1:
-        partners = request is not None and bool(request.partners)
-        used["size of the space taken"] = "the size that all species have" if partners else RULE
+        used["size of the space taken"] = _rule_taken(request)
         used["spread over the sizes"] = f"{spread(energies):.6f} hartree"
     return used
+
+
+def _rule_taken(request: SpaceRequest | None) -> str:
+    if request is not None and request.choice == "set":
+        return "the size that was set"
+    return "the size that all species have" if request is not None and request.partners else RULE
 
 
 def growth(

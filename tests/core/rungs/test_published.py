@@ -79,6 +79,8 @@ def totals_of(name, value, entry):
     found = [*stated, *map(float, re.findall(r"-\d+\.\d{6,}", entry["verified"]))]
     if entry["method"] == "size extensivity":
         return [3 * atom + excess for atom in found for excess in stated]
+    if name == "TCCSD(T)" and "(T) increment" in entry["quantity"]:
+        return [stated[1] + stated[2]]
     if "corr" not in entry["quantity"]:
         return found
     of_field = RUNGS["HF"].published

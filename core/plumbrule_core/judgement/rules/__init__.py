@@ -1,6 +1,7 @@
 """The rules: each draws findings from readings; `RULES` is the one list."""
 
 from plumbrule_core.judgement.rules import (
+    active_space,
     amplitudes,
     basis,
     convergence,
@@ -30,6 +31,7 @@ RULES: tuple[Rule, ...] = (
     *spin.RULES,
     *amplitudes.RULES,
     *correlation.RULES,
+    *active_space.RULES,
     *ladder.RULES,
     *shape.RULES,
     *origin.RULES,

@@ -5,11 +5,13 @@ from dataclasses import dataclass, field
 from typing import Any
 
 from plumbrule_core.basis_sets import find
+from plumbrule_core.documents.active_space import GrowthPoint, Space
 from plumbrule_core.documents.brief import Brief
 from plumbrule_core.documents.plan import Forecast, Machine, Plan, Settings, Task, TaskSpec
 from plumbrule_core.documents.results import Reading, ReadingValue, Result
 from plumbrule_core.documents.species import Atom, Species
 from plumbrule_core.judgement.case import Case, Standing
+from plumbrule_core.rungs import SPACE, stands_on_space
 
 LADDER = ("HF", "MP2", "CCSD", "CCSD(T)")
 LIGHT = Forecast(seconds=10.0, seconds_low=5.0, seconds_high=20.0, memory_mb=200.0)
@@ -39,7 +41,10 @@ class Molecule:
     energies: Mapping[str, float] = field(default_factory=dict)
     readings: Mapping[str, ReadingValue] = field(default_factory=dict)
     notes: tuple[str, ...] = ()
+    """Of Hartree-Fock, or of the rung that finds the active space where the example has it."""
     converged: bool = True
+    space: Space | None = None
+    growth: tuple[GrowthPoint, ...] = ()
 
     def species(self, name: str) -> Species:
         """The species, named."""
@@ -133,5 +138,7 @@ def _result(task: Task, found: Molecule) -> Result:
         memory_mb=100.0,
         reference="RHF" if found.multiplicity == 1 else "UHF",
         readings=tuple(Reading(name=name, value=value) for name, value in {**calm, **found.readings}.items()),
-        notes=found.notes if rung == "HF" else (),
+        notes=found.notes if rung == (SPACE if found.space else "HF") else (),
+        space=found.space if stands_on_space(rung) else None,
+        growth=found.growth if stands_on_space(rung) else (),
     )

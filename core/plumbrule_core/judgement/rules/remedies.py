@@ -9,8 +9,8 @@ from plumbrule_core.documents.findings import Edit, Remedy
 from plumbrule_core.judgement.case import Case
 from plumbrule_core.rungs import RUNGS
 
-ACTIVE_SPACE_RUNGS = ("CASSCF", "NEVPT2", "TCCSD", "TCCSD(T)")
-"""The rungs that describe more than one determinant; offered as soon as they are built."""
+ACTIVE_SPACE_RUNGS = ("NEVPT2", "TCCSD(T)")
+"""The rungs that describe more than one determinant; what they stand on comes by itself."""
 
 
 def change(label: str, path: str, value: Any, then_run: bool = False) -> Remedy:
@@ -32,10 +32,14 @@ def add_rungs(case: Case, wanted: Iterable[str], label: str) -> tuple[Remedy, ..
 
 
 def active_space(case: Case) -> tuple[Remedy, ...]:
-    """More than one determinant: the rungs for it, or the plain word that they are not built."""
-    if not any(name in RUNGS for name in ACTIVE_SPACE_RUNGS):
-        return (advice("An active-space method is needed for this molecule; it is not in this version"),)
-    return add_rungs(case, ACTIVE_SPACE_RUNGS, "Add rungs with an active space and run")
+    """More than one determinant: the rungs for it, and a recipe that lets them have a space."""
+    new = [name for name in ACTIVE_SPACE_RUNGS if name not in case.recipe.rungs]
+    asked = case.recipe.active_space
+    allowed = (Edit(path="recipe.active_space", value=None),) if asked and asked.choice == "none" else ()
+    label = f"Add an active space, {' and '.join(new)}, and run"
+    return tuple(
+        one.model_copy(update={"edits": (*one.edits, *allowed)}) for one in add_rungs(case, new, label)
+    )
 
 
 def larger_basis(case: Case) -> tuple[Remedy, ...]:

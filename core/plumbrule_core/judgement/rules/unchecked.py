@@ -10,6 +10,7 @@ from plumbrule_core.judgement.rules.convergence import stands_on
 from plumbrule_core.judgement.rules.example import CALM, Example, Molecule
 from plumbrule_core.judgement.rules.remedies import advice
 from plumbrule_core.judgement.wording import listed
+from plumbrule_core.rungs import SPACE
 
 REQUIRED: Mapping[str, tuple[str, ...]] = {
     "HF": ("stable",),
@@ -17,6 +18,7 @@ REQUIRED: Mapping[str, tuple[str, ...]] = {
     "CISD": ("c0_squared",),
     "CCSD": ("T1", "largest_t2"),
     "CCSD(T)": ("triples",),
+    SPACE: ("s1_max",),
 }
 """What each rung must have measured; without it nothing says whether its energy holds."""
 

@@ -47,7 +47,7 @@ class ClauseButton(QPushButton):
 
 
 class Sentence(QWidget):
-    """The sentence; each clause with a key is a button that opens its editor. Tab comes here from `before`."""
+    """The sentence; each clause with a key is a button that opens its editor. Tab comes from `before`."""
 
     def __init__(self, desk: Desk, before: QWidget, parent: QWidget | None = None) -> None:
         super().__init__(parent)

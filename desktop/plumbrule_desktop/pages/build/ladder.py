@@ -76,7 +76,8 @@ class Ladder(QWidget):
     def refresh(self) -> None:
         """Show the rungs that are built and those that the recipe asks for, with their costs."""
         desk = self._desk
-        offered = {rung.name: rung for rung in desk.offer.rungs}
+        # What finds an active space comes by need, so it is not offered.
+        offered = {rung.name: rung for rung in desk.offer.rungs if rung.kind != DETECTION}
         chosen = desk.brief.recipe.rungs
         names = (*offered, *(name for name in chosen if name not in offered))
         if tuple(self.cards) != names:

@@ -9,6 +9,7 @@ from PySide6.QtWidgets import QComboBox, QLabel, QVBoxLayout, QWidget
 from plumbrule_core.basis_sets import BASES
 from plumbrule_desktop.findings_view import FindingsView
 from plumbrule_desktop.pages.build.ladder import Ladder
+from plumbrule_desktop.pages.build.recipe_space import SpaceControl
 from plumbrule_desktop.state import changes
 from plumbrule_desktop.state.desk import Desk
 from plumbrule_desktop.widgets.card import Card, label
@@ -97,6 +98,7 @@ class RecipePanel(QWidget):
         self.combos = {key: self._combo(key, words) for key, (_, words) in CHOICES.items()}
         self.fields = {"basis": Field("Basis set", self.basis)}
         self.fields |= {key: Field(CHOICES[key][0], combo) for key, combo in self.combos.items()}
+        self.space = SpaceControl(desk)
         self.notes = label("", "muted")
         self._arrange()
 
@@ -119,6 +121,7 @@ class RecipePanel(QWidget):
         settings.column.setSpacing(9)
         for field in (self.fields["basis"], self._pair_field, *(self.fields[key] for key in CHOICES)):
             settings.column.addWidget(field)
+        settings.column.addWidget(self.space)
         self._before = label("Before the run", "heading")
         self._also = label("Good to know", "heading")
         parts: tuple[QWidget, ...] = (
@@ -156,6 +159,7 @@ class RecipePanel(QWidget):
             control.setEnabled(not desk.casebook.read_only)
         for key, field in self.fields.items():
             field.show_fault(self._faults_at(key))
+        self.space.refresh(self._faults_at("active_space"))
         _say(self.rung_fault, self._faults_at("rungs"))
         _say(self.notes, "\n".join(desk.plan.notes) if desk.plan and not desk.faults else "")
 

@@ -121,8 +121,15 @@ def _spaces(case: Case, rung: str) -> dict[str, Space] | None:
         space = next((r.space for (name, _), r in [*view.results.items()][::-1] if name == rung), None)
         if space is None:
             return None
-        found[view.name] = space
+        found[view.name] = _with_single_electrons(space, part.species.unpaired)
     return found
+
+
+def _with_single_electrons(space: Space, unpaired: int) -> Space:
+    """An empty space of an open shell holds its single electrons: that is the same one determinant."""
+    if space.orbitals or not unpaired:
+        return space
+    return Space(electrons=unpaired, orbitals=tuple(range(1, unpaired + 1)))
 
 
 def _balanced(case: Case, spaces: dict[str, Space]) -> bool:

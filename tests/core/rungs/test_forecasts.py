@@ -63,11 +63,18 @@ def test_ccsd_costs_as_o2_v4_and_triples_as_o3_v4():
     assert triples == pytest.approx(128, rel=0.02)
 
 
+SHARED = ("FCI", "Active space", "CASCI", "DMRG", "CASSCF", "NEVPT2", "CCSDT(Q)")
+"""Rungs whose two spins share their orbitals, and the one that is for closed shells alone."""
+
+
 def test_open_shells_cost_more_and_cores_cost_less():
     opened = ETHANOL.__class__(atoms=9, functions=72, occupied=10, virtual=59, frozen=3, unrestricted=True)
     many = MACHINE.model_copy(update={"cores": 4})
     for name, rung in RUNGS.items():
-        assert rung.forecast(opened, MACHINE).seconds > 1.5 * rung.forecast(ETHANOL, MACHINE).seconds, name
+        if name not in SHARED:
+            assert rung.forecast(opened, MACHINE).seconds > 1.5 * rung.forecast(ETHANOL, MACHINE).seconds, (
+                name
+            )
         assert rung.forecast(ETHANOL, many).seconds < rung.forecast(ETHANOL, MACHINE).seconds
     assert 1 < speed_up(4) < 4
 

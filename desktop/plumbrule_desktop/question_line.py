@@ -28,7 +28,7 @@ from plumbrule_desktop.widgets.card import label
 from plumbrule_desktop.widgets.flow import FlowLayout
 from plumbrule_desktop.widgets.popup import Popup
 
-CHOOSER_WIDTH = 270
+CHOOSER_WIDTH = 225
 NO_MOLECULE = (Clause(text="Put a molecule in, then ask what you want to know."),)
 NO_QUESTION = (Clause(text="Ask: "), Clause(text="what do you want to know?", key="kind"))
 

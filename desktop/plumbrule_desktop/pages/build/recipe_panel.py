@@ -117,16 +117,20 @@ class RecipePanel(QWidget):
     def _arrange(self) -> None:
         scroll, column = column_in_scroll()
         self._pair_field = Field("Extrapolation", self.pair)
-        settings = Card()
-        settings.column.setSpacing(9)
-        for field in (self.fields["basis"], self._pair_field, *(self.fields[key] for key in CHOICES)):
-            settings.column.addWidget(field)
-        settings.column.addWidget(self.space)
+        basis, settings = Card(), Card()
+        for card, fields in (
+            (basis, (self.fields["basis"], self._pair_field)),
+            (settings, (*(self.fields[key] for key in CHOICES), self.space)),
+        ):
+            card.column.setSpacing(9)
+            for field in fields:
+                card.column.addWidget(field)
         self._before = label("Before the run", "heading")
         self._also = label("Good to know", "heading")
         parts: tuple[QWidget, ...] = (
             self._before,
             self.findings,
+            basis,
             label("Ladder", "heading"),
             self.rung_fault,
             self.ladder,

@@ -1,5 +1,6 @@
 """NEVPT2: the electrons outside the active space correlated by perturbation theory on CASSCF."""
 
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -35,9 +36,9 @@ class NEVPT2:
         "(2001); C. Angeli, R. Cimiraglia and J.-P. Malrieu, J. Chem. Phys. 117, 9138 (2002)"
     )
     published: tuple[Published, ...] = (
-        nitrogen_value("1.1", -109.090227072 - 0.156225827, "A04", atol=5e-6),
+        replace(nitrogen_value("1.1", -109.090227072 - 0.156225827, "A04", atol=5e-6), slow=True),
         nitrogen_value("1.0977", -109.2462, "", atol=5e-5),
-        nitrogen_value("1.5", -109.0953, "", atol=5e-5),
+        replace(nitrogen_value("1.5", -109.0953, "", atol=5e-5), slow=True),
     )
 
     def forecast(self, size: Size, machine: Machine) -> Forecast:

@@ -32,6 +32,10 @@ from plumbrule_desktop.widgets.segments import Segments
 CASEBOOKS = "Casebooks (*.plumb)"
 
 
+PATIENCE_MS = 1500
+"""How long the other pages wait for the first plan."""
+
+
 class Window(QMainWindow):
     """One window over one desk."""
 
@@ -130,6 +134,9 @@ class Window(QMainWindow):
 
     def _connect(self) -> None:
         desk = self.desk
+        self._patience = QTimer(self, singleShot=True, interval=PATIENCE_MS)
+        self._patience.timeout.connect(self._furnish)
+        desk.plan_changed.connect(self._plan_came)
         self.segments.chosen.connect(self.show_page)
         desk.begun.connect(self.banner.clear)
         desk.message.connect(self.banner.say)
@@ -160,7 +167,14 @@ class Window(QMainWindow):
     def _page_came(self, name: str) -> None:
         if name == PAGES[0]:
             self._begin(self.desk)
-        QTimer.singleShot(0, self, self._furnish)
+            self._patience.start()
+        else:
+            QTimer.singleShot(0, self, self._furnish)
+
+    def _plan_came(self) -> None:
+        """What is asked and its forecast come before the pages that nobody looks at yet."""
+        if self._patience.isActive() and self.desk.plan is not None:
+            self._patience.start(0)
 
     @property
     def pages(self) -> dict[str, QWidget]:

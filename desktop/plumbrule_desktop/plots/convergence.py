@@ -40,7 +40,7 @@ class _Track:
         self.plot.setMouseEnabled(False, False)
         self.plot.hideButtons()
         self.plot.disableAutoRange()
-        self.plot.showGrid(x=True, y=True, alpha=0.25)
+        self.plot.showGrid(x=False, y=True, alpha=0.25)
         self.plot.getAxis("left").setWidth(52)
         self.curve = self.plot.plot(symbol=symbol, symbolSize=6, antialias=True)
         self.curve.opts["useCache"] = False  # else a saved drawing holds its points as pixels

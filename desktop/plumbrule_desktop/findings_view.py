@@ -1,6 +1,7 @@
 """Findings as cards: the severity as mark and word, the headline, the consequence, and remedies."""
 
 from collections.abc import Iterable
+from textwrap import fill
 
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QHBoxLayout, QPushButton, QVBoxLayout, QWidget
@@ -14,6 +15,9 @@ from plumbrule_desktop.widgets.mark import SeverityMark
 
 WORDS: dict[Severity, str] = {"note": "Good to know", "care": "Take care", "stop": "Do not rely on it"}
 _ORDER: dict[Severity, int] = {"stop": 0, "care": 1, "note": 2}
+
+WIDEST = 32
+"""Characters on one line of a remedy's button, so that it fits the narrowest column."""
 
 
 class FindingCard(Card):
@@ -44,7 +48,8 @@ class FindingCard(Card):
         row = FlowLayout(spacing=6)
         for remedy in remedies:
             if remedy.edits or remedy.then_run:
-                button = QPushButton(remedy.label)
+                button = QPushButton(fill(remedy.label, WIDEST))
+                button.setAccessibleName(remedy.label)
                 button.setAutoDefault(False)
                 button.clicked.connect(lambda _=False, each=remedy: self.chosen.emit(each))
                 row.addWidget(button)

@@ -169,6 +169,7 @@ def test_the_buttons_of_a_finding_are_reached_by_tab(qtbot, page, desk, made):
     with qtbot.waitActive(page):
         page.activateWindow()
     page.views.tabs.setFocus()
+    qtbot.waitUntil(page.views.tabs.hasFocus)
     met = []
     for _ in range(12):
         qtbot.keyClick(QApplication.focusWidget(), Qt.Key.Key_Tab)

@@ -10,8 +10,10 @@ from PySide6.QtCore import QCoreApplication, QEvent, QMimeData, Qt, QUrl
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import QApplication, QMessageBox, QPushButton
 
+from plumbrule_core.documents.findings import Finding, Remedy
 from plumbrule_core.documents.species import Species
 from plumbrule_desktop import look
+from plumbrule_desktop.findings_view import FindingsView
 from plumbrule_desktop.page_stack import PAGES
 from plumbrule_desktop.pages.build.ladder import FUNCTIONALS, SPACES
 from plumbrule_desktop.pages.build.page import BuildPage
@@ -446,3 +448,21 @@ def test_the_demo_opens_from_the_command_line(qtbot, open_window: Callable[..., 
     window = open_window(Desk.open_demo)
     assert len(window.desk.entries) >= 2
     assert window.desk.casebook.undo_label is None
+
+
+def test_a_long_remedy_wraps_so_that_its_card_fits_the_narrowest_column(qtbot):
+    label = "Add an active space, NEVPT2 and TCCSD(T), and run"
+    finding = Finding(
+        code="x",
+        severity="care",
+        headline="h",
+        consequence="c",
+        remedies=(Remedy(label=label, then_run=True),),
+    )
+    view = FindingsView()
+    qtbot.addWidget(view)
+    view.show_findings((finding,))
+    (button,) = view.findChildren(QPushButton)
+    assert button.accessibleName() == label
+    assert button.text().replace("\n", " ") == label
+    assert view.minimumSizeHint().width() < 290

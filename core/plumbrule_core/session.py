@@ -20,7 +20,7 @@ from plumbrule_core.documents.plan import Machine, Plan
 from plumbrule_core.documents.results import Result
 from plumbrule_core.documents.run_state import RunState
 from plumbrule_core.documents.species import Species
-from plumbrule_core.engine import LocalExecutor, Run, cache_folder, run_plan
+from plumbrule_core.engine import LocalExecutor, Run, blob_folder, cache_folder, run_plan
 from plumbrule_core.engine import machine as measure_machine
 from plumbrule_core.errors import CasebookError, Refused, Unreadable
 from plumbrule_core.exports.record import Record
@@ -233,7 +233,7 @@ class Session:
             self._live[brief_id] = (key, state)
             if isinstance(event, Finished) and not event.reused:
                 for ref in event.result.arrays.values():
-                    self._casebook.put_array(cache_folder() / "blobs" / f"{ref.blob}.npy")
+                    self._casebook.put_array(blob_folder(cache_folder()) / f"{ref.blob}.npy")
                 self._casebook.put_result(event.result)
             task = state.tasks.get(event.task)
             if task is not None and task.state not in ("waiting", "running", "reused"):

@@ -2,51 +2,33 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, ClassVar
 
 import numpy as np
 
-from plumbrule_core.errors import PlumbruleError
-from plumbrule_core.rungs.correlated.extrapolation import Extrapolation, space_for
-from plumbrule_core.rungs.correlated.iterations import MOST_ITERATIONS
+from plumbrule_core.rungs.correlated.iterations import Iterations, begun
 from plumbrule_core.rungs.correlated.reference import correlated_reference, fitting_of, is_unrestricted
-from plumbrule_core.rungs.protocol import Given, Shelf, Tell
+from plumbrule_core.rungs.protocol import Given, Tell
 
 
 @dataclass(slots=True, kw_only=True)
-class TripleIterations:
-    """Stands in for the library's extrapolation, as `iterations.Iterations` does for CCSD."""
+class TripleIterations(Iterations):
+    """The same for CCSDT, whose amplitudes the library hands over as one object."""
 
-    solver: Any
-    integrals: Any
-    shelf: Shelf
-    tell: Tell
-    extrapolation: Extrapolation
-    done: int = 0
+    method: ClassVar[str] = "CCSDT"
 
-    def __call__(self, amplitudes: Any, step: int, residual: float, *_: Any) -> Any:
+    def __call__(self, amplitudes: Any, step: int, residual: float, *_: Any) -> Any:  # type: ignore[override]
         """One iteration ends: extrapolate, save, tell (which may raise Stopped)."""
-        if not np.isfinite(residual):
-            raise PlumbruleError(
-                f"the CCSDT amplitudes ran away in iteration {self.done + 1}: one determinant is no start "
-                "for this molecule, or the geometry is wrong"
-            )
-        vector = self.extrapolation(self.solver.amplitudes_to_vector(amplitudes))
-        amplitudes = self.solver.vector_to_amplitudes(vector)
-        self.done += 1
-        energy = float(self.solver.e_hf + self.solver.energy(amplitudes, self.integrals))
-        self.shelf.save({**self.extrapolation.state(), **self._where()})
-        self.tell.iteration(self.done, energy, float(residual))
-        return amplitudes
+        (following,) = self.ended((amplitudes,), residual)
+        return following
 
-    def keep(self) -> None:
-        """Store the converged amplitudes alone."""
-        vector = self.solver.amplitudes_to_vector(self.solver.tamps)
-        none = np.zeros((0, vector.size), dtype=np.float32)
-        self.shelf.save({"amplitudes": vector, "vectors": none, "errors": none, **self._where()})
+    def unpacked(self, vector: np.ndarray) -> tuple[Any, ...]:
+        """The one object that holds them all."""
+        return (self.solver.vector_to_amplitudes(vector),)
 
-    def _where(self) -> dict[str, np.ndarray]:
-        return {"orbitals": np.asarray(self.solver.mo_coeff), "iterations": np.array(self.done)}
+    def solution(self) -> tuple[Any, ...]:
+        """The amplitudes that the solver ended with."""
+        return (self.solver.tamps,)
 
 
 def full_triples(given: Given) -> Any:
@@ -84,27 +66,10 @@ def iterate_triples(
     given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mapping[str, np.ndarray] | None
 ) -> TripleIterations:
     """Run CCSDT to its end, from the checkpoint where one fits; raises Stopped, PlumbruleError."""
-    settings = given.spec.settings
-    solver.conv_tol, solver.conv_tol_normt = settings.cc_tolerance, settings.cc_residual
-    solver.max_cycle, solver.diis = MOST_ITERATIONS, False
-    solver.e_hf = solver.get_e_hf()
     solver.unique_tamps_map = solver.build_unique_tamps_map()
-    if stored is None:
-        start = solver.amplitudes_to_vector(solver.init_amps(integrals)[1])
-        extrapolation, done = Extrapolation(start, space_for(start.size, given.memory_mb)), 0
-    else:
-        space = space_for(stored["amplitudes"].size, given.memory_mb)
-        extrapolation, done = Extrapolation.carried_on(stored, space), int(stored["iterations"])
-    iterations = TripleIterations(
-        solver=solver,
-        integrals=integrals,
-        shelf=given.shelf,
-        tell=tell,
-        extrapolation=extrapolation,
-        done=done,
-    )
-    solver.run_diis = iterations
-    solver.kernel(tamps=solver.vector_to_amplitudes(extrapolation.previous), eris=integrals)
+    iterations = begun(TripleIterations, given, tell, solver, integrals, stored)
+    (amplitudes,) = iterations.unpacked(iterations.extrapolation.previous)
+    solver.kernel(tamps=amplitudes, eris=integrals)
     iterations.keep()
     return iterations
 

@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, ClassVar, TypeVar
 
 import numpy as np
 
@@ -14,6 +14,7 @@ from plumbrule_core.rungs.protocol import Bench, Given, Shelf, Tell
 SAME_SPACE = 1e-8
 """Stored orbitals are of the same determinant where their occupied spaces overlap to within this of one."""
 MOST_ITERATIONS = 100
+Started = TypeVar("Started", bound="Iterations")
 
 
 @dataclass(slots=True, kw_only=True)
@@ -27,24 +28,37 @@ class Iterations:
     extrapolation: Extrapolation
     done: int = 0
 
-    def __call__(self, t1: Any, t2: Any, step: int, residual: float, *_: Any) -> tuple[Any, Any]:
+    method: ClassVar[str] = "CCSD"
+
+    def __call__(self, t1: Any, t2: Any, step: int, residual: float, *_: Any) -> tuple[Any, ...]:
         """One iteration ends: extrapolate, save, tell (which may raise Stopped)."""
+        return self.ended((t1, t2), residual)
+
+    def ended(self, amplitudes: tuple[Any, ...], residual: float) -> tuple[Any, ...]:
+        """The next amplitudes after an iteration that gave these; raises PlumbruleError, Stopped."""
         if not np.isfinite(residual):
             raise PlumbruleError(
-                f"the CCSD amplitudes ran away in iteration {self.done + 1}: one determinant is no start for "
-                "this molecule, or the geometry is wrong"
+                f"the {self.method} amplitudes ran away in iteration {self.done + 1}: one determinant is no "
+                "start for this molecule, or the geometry is wrong"
             )
-        vector = self.extrapolation(self.solver.amplitudes_to_vector(t1, t2))
-        t1, t2 = self.solver.vector_to_amplitudes(vector)
+        amplitudes = self.unpacked(self.extrapolation(self.solver.amplitudes_to_vector(*amplitudes)))
         self.done += 1
-        energy = float(self.solver.e_hf + self.solver.energy(t1, t2, self.integrals))
+        energy = float(self.solver.e_hf + self.solver.energy(*amplitudes, self.integrals))
         self.shelf.save({**self.extrapolation.state(), **self._where()})
         self.tell.iteration(self.done, energy, float(residual))
-        return t1, t2
+        return amplitudes
+
+    def unpacked(self, vector: np.ndarray) -> tuple[Any, ...]:
+        """The amplitudes that a vector holds, as the library's functions take them."""
+        return tuple(self.solver.vector_to_amplitudes(vector))
+
+    def solution(self) -> tuple[Any, ...]:
+        """The amplitudes that the solver ended with."""
+        return self.solver.t1, self.solver.t2
 
     def keep(self) -> None:
         """Store the converged amplitudes alone."""
-        vector = self.solver.amplitudes_to_vector(self.solver.t1, self.solver.t2)
+        vector = self.solver.amplitudes_to_vector(*self.solution())
         none = np.zeros((0, vector.size), dtype=np.float32)
         self.shelf.save({"amplitudes": vector, "vectors": none, "errors": none, **self._where()})
 
@@ -52,10 +66,15 @@ class Iterations:
         return {"orbitals": np.asarray(self.solver.mo_coeff), "iterations": np.array(self.done)}
 
 
-def iterate(
-    given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mapping[str, np.ndarray] | None
-) -> Iterations:
-    """Run the solver to its end, from the checkpoint where one fits; raises Stopped, PlumbruleError."""
+def begun(
+    kind: type[Started],
+    given: Given,
+    tell: Tell,
+    solver: Any,
+    integrals: Any,
+    stored: Mapping[str, np.ndarray] | None,
+) -> Started:
+    """The iterations of a solver that has not run, put into it: from the checkpoint where one fits."""
     settings = given.spec.settings
     solver.conv_tol, solver.conv_tol_normt = settings.cc_tolerance, settings.cc_residual
     solver.max_cycle, solver.diis = MOST_ITERATIONS, False
@@ -66,7 +85,7 @@ def iterate(
     else:
         space = space_for(stored["amplitudes"].size, given.memory_mb)
         extrapolation, done = Extrapolation.carried_on(stored, space), int(stored["iterations"])
-    iterations = Iterations(
+    solver.run_diis = iterations = kind(
         solver=solver,
         integrals=integrals,
         shelf=given.shelf,
@@ -74,8 +93,15 @@ def iterate(
         extrapolation=extrapolation,
         done=done,
     )
-    solver.run_diis = iterations
-    t1, t2 = solver.vector_to_amplitudes(extrapolation.previous)
+    return iterations
+
+
+def iterate(
+    given: Given, tell: Tell, solver: Any, integrals: Any, stored: Mapping[str, np.ndarray] | None
+) -> Iterations:
+    """Run the solver to its end, from the checkpoint where one fits; raises Stopped, PlumbruleError."""
+    iterations = begun(Iterations, given, tell, solver, integrals, stored)
+    t1, t2 = iterations.unpacked(iterations.extrapolation.previous)
     solver.kernel(t1=t1, t2=t2, eris=integrals)
     iterations.keep()
     return iterations
